@@ -1,0 +1,99 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"os"
+
+	"busloom/diag"
+	"busloom/schema"
+
+	"golang.org/x/term"
+)
+
+// problemFormat is how diagnostics are printed.
+type problemFormat string
+
+const (
+	problemsText problemFormat = "text"
+	problemsJSON problemFormat = "json"
+)
+
+func (f problemFormat) valid() error {
+	if f != problemsText && f != problemsJSON {
+		return usageError("--format is %q: it can be text or json", string(f))
+	}
+	return nil
+}
+
+// loadNetwork reads a description or a database. Problems are printed to
+// stderr (notes only if asked for); with errors the result is an exitError.
+func loadNetwork(std *streams, path string) (*schema.Network, error) {
+	network, list, err := readNetwork(path)
+	if err != nil {
+		return nil, err
+	}
+	if err := diag.Render(std.err, list.Sorted(), diag.Style{Color: colorful(std.err)}); err != nil {
+		return nil, ioError(err)
+	}
+	if list.Failed() {
+		return nil, &exitError{exitDescription, fmt.Errorf("%s: %s", path, countProblems(list))}
+	}
+	return network, nil
+}
+
+func readNetwork(path string) (*schema.Network, *diag.List, error) {
+	text, err := readDescription(path)
+	if err != nil {
+		return nil, nil, ioError(err)
+	}
+	if schema.IsDatabase(text) {
+		network, list := schema.LoadDatabase(diag.NewFile(path, text))
+		return network, list, nil
+	}
+	network, list := schema.Compile(schema.DiskFiles(), path)
+	return network, list, nil
+}
+
+// largestDescription bounds what is read into memory at once.
+const largestDescription = 1 << 30
+
+func readDescription(path string) ([]byte, error) {
+	f, err := os.Open(path)
+	if err != nil {
+		return nil, err
+	}
+	defer f.Close()
+	if info, err := f.Stat(); err == nil && info.IsDir() {
+		return nil, fmt.Errorf("%s is a folder, not a description", path)
+	}
+	text, err := io.ReadAll(io.LimitReader(f, largestDescription+1))
+	if err != nil {
+		return nil, err
+	}
+	if len(text) > largestDescription {
+		return nil, fmt.Errorf("%s is larger than %d MiB", path, largestDescription>>20)
+	}
+	return text, nil
+}
+
+func countProblems(list *diag.List) string {
+	plural := func(n int, word string) string {
+		if n == 1 {
+			return fmt.Sprintf("1 %s", word)
+		}
+		return fmt.Sprintf("%d %ss", n, word)
+	}
+	return plural(list.Count(diag.Error), "error") + ", " + plural(list.Count(diag.Warning), "warning") +
+		", " + plural(list.Count(diag.Note), "note")
+}
+
+// colorful reports whether w is a terminal whose user wants colours.
+func colorful(w io.Writer) bool {
+	if os.Getenv("NO_COLOR") != "" || os.Getenv("TERM") == "dumb" {
+		return false
+	}
+	f, ok := w.(*os.File)
+	return ok && term.IsTerminal(int(f.Fd()))
+}
+
