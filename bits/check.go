@@ -10,8 +10,8 @@ const MaxByte = 63
 
 // PlaceError says why a place can't be.
 type PlaceError struct {
-	Run     Run
-	Problem string
+	Run     Run    // the run at fault; of two that meet, the later
+	Problem string // for the user, without position
 }
 
 func (e *PlaceError) Error() string { return e.Problem }
@@ -29,7 +29,7 @@ func (r Run) Check() error {
 		}
 	}
 	if r.Heavy.Byte == r.Light.Byte && r.Heavy.Bit < r.Light.Bit {
-		return &PlaceError{r, fmt.Sprintf("within one byte a run goes from its heaviest bit down, and bit %d is lighter than bit %d", r.Heavy.Bit, r.Light.Bit)}
+		return &PlaceError{r, fmt.Sprintf("within one byte a run goes down from its heaviest bit: write %s", Run{r.Light, r.Heavy})}
 	}
 	return nil
 }
@@ -53,16 +53,13 @@ func (p Place) Check() error {
 	return nil
 }
 
-// Width is the number of bits.
+// Width is the number of bits; below 1 for a run upside down within its byte.
 func (r Run) Width() int {
-	if r.Heavy.Byte == r.Light.Byte {
-		return r.Heavy.Bit - r.Light.Bit + 1
-	}
 	between := r.Light.Byte - r.Heavy.Byte
 	if between < 0 {
 		between = -between
 	}
-	return r.Heavy.Bit + 1 + 8*(between-1) + 8 - r.Light.Bit
+	return 8*between + r.Heavy.Bit - r.Light.Bit + 1
 }
 
 // Width is the number of bits.
@@ -76,23 +73,37 @@ func (p Place) Width() int {
 
 // Bits lists the bits of a legal place, heaviest first.
 func (p Place) Bits() []Bit {
-	out := make([]Bit, 0, p.Width())
+	out := make([]Bit, 0, max(0, p.Width()))
 	for _, r := range p.Runs {
-		step := 1
-		if r.Light.Byte < r.Heavy.Byte {
-			step = -1
-		}
-		for at := r.Heavy; ; {
+		at := r.Heavy
+		for range r.Width() {
 			out = append(out, at)
-			if at == r.Light {
-				break
-			}
 			if at.Bit--; at.Bit < 0 {
-				at = Bit{at.Byte + step, 7}
+				at = Bit{at.Byte + r.step(), 7}
 			}
 		}
 	}
 	return out
+}
+
+// step is from a byte of the run to the next lighter one.
+func (r Run) step() int {
+	if r.Light.Byte < r.Heavy.Byte {
+		return -1
+	}
+	return 1
+}
+
+// part is the run's share of one of its bytes: the lightest bit and how many.
+func (r Run) part(inByte int) (light, width int) {
+	heavy := 7
+	if inByte == r.Heavy.Byte {
+		heavy = r.Heavy.Bit
+	}
+	if inByte == r.Light.Byte {
+		light = r.Light.Bit
+	}
+	return light, heavy - light + 1
 }
 
 // String is the form of the language, such as 0.7..1.0.
@@ -130,4 +141,14 @@ func (p Place) LastByte() int {
 		last = max(last, r.Heavy.Byte, r.Light.Byte)
 	}
 	return last
+}
+
+// WholeBytes reports whether every run starts at a bit 7 and ends at a bit 0.
+func (p Place) WholeBytes() bool {
+	for _, r := range p.Runs {
+		if r.Heavy.Bit != 7 || r.Light.Bit != 0 {
+			return false
+		}
+	}
+	return true
 }

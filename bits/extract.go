@@ -1,6 +1,9 @@
 package bits
 
-import "encoding/binary"
+import (
+	"encoding/binary"
+	"math/bits"
+)
 
 // Shape says how an Extractor takes a value out.
 type Shape uint8
@@ -18,61 +21,62 @@ const (
 )
 
 // Extractor takes the raw value of one place of up to 64 bits out of payloads.
+//
+// Offset is 0 for every place within the first 8 bytes, so that one load
+// serves all values of a classic frame. Behind them the word ends at the
+// place's last byte, so that it never reaches beyond Need.
 type Extractor struct {
 	Shape  Shape
-	Offset int // first byte of the 8-byte word
-	Shift  uint8
+	Shift  uint8 // 0 to 63
+	Offset int   // first byte of the 8-byte word; bytes that a short payload lacks count as 0
 	Mask   uint64
 	need   int
 	pieces []piece
 }
 
-// piece is a stretch within one byte, heaviest piece first.
+// piece is a stretch within one byte.
 type piece struct {
 	at, shift, width uint8
 }
 
 // Compile makes the extractor of a legal place of 1 to 64 bits.
 func Compile(p Place) Extractor {
-	e := Extractor{Shape: Pieces, need: p.LastByte() + 1, Mask: ^uint64(0) >> (64 - p.Width())}
-	for _, r := range p.Runs {
-		e.pieces = append(e.pieces, r.pieces()...)
-	}
-	if len(p.Runs) != 1 {
-		return e
-	}
-	r := p.Runs[0]
-	low, high := min(r.Heavy.Byte, r.Light.Byte), max(r.Heavy.Byte, r.Light.Byte)
-	if high-low >= 8 {
-		return e
-	}
-	// Words of classic frames all start at byte 0, so one load serves all.
-	if high >= 8 {
-		e.Offset = low
-	}
-	if r.Heavy.Byte < r.Light.Byte {
-		e.Shape = WordBE
-		e.Shift = uint8(8*(7-(r.Light.Byte-e.Offset)) + r.Light.Bit)
-	} else {
-		e.Shape = WordLE
-		e.Shift = uint8(8*(r.Light.Byte-e.Offset) + r.Light.Bit)
+	e := Extractor{need: p.LastByte() + 1, Mask: ^uint64(0) >> (64 - p.Width())}
+	if !e.asWord(p) {
+		e.Shape = Pieces
+		for _, r := range p.Runs {
+			for b := r.Heavy.Byte; ; b += r.step() {
+				light, width := r.part(b)
+				e.pieces = append(e.pieces, piece{uint8(b), uint8(light), uint8(width)})
+				if b == r.Light.Byte {
+					break
+				}
+			}
+		}
 	}
 	return e
 }
 
-func (r Run) pieces() []piece {
-	if r.Heavy.Byte == r.Light.Byte {
-		return []piece{{uint8(r.Heavy.Byte), uint8(r.Light.Bit), uint8(r.Heavy.Bit - r.Light.Bit + 1)}}
+// asWord fills in the word shape of a single run within 8 bytes.
+func (e *Extractor) asWord(p Place) bool {
+	if len(p.Runs) != 1 {
+		return false
 	}
-	step := 1
-	if r.Light.Byte < r.Heavy.Byte {
-		step = -1
+	r := p.Runs[0]
+	low, high := min(r.Heavy.Byte, r.Light.Byte), max(r.Heavy.Byte, r.Light.Byte)
+	if high-low >= 8 {
+		return false
 	}
-	out := []piece{{uint8(r.Heavy.Byte), 0, uint8(r.Heavy.Bit + 1)}}
-	for b := r.Heavy.Byte + step; b != r.Light.Byte; b += step {
-		out = append(out, piece{uint8(b), 0, 8})
+	e.Offset = max(0, high-7)
+	light := r.Light.Byte - e.Offset
+	if r.Heavy.Byte < r.Light.Byte {
+		e.Shape = WordBE
+		e.Shift = uint8(8*(7-light) + r.Light.Bit)
+	} else {
+		e.Shape = WordLE
+		e.Shift = uint8(8*light + r.Light.Bit)
 	}
-	return append(out, piece{uint8(r.Light.Byte), uint8(r.Light.Bit), uint8(8 - r.Light.Bit)})
+	return true
 }
 
 // Need is the payload length in bytes that Raw reads.
@@ -83,22 +87,23 @@ func (e *Extractor) Raw(payload []byte) uint64 {
 	if e.Shape == Pieces {
 		return e.gather(payload)
 	}
-	var word uint64
-	if len(payload) >= e.Offset+8 {
-		w := payload[e.Offset : e.Offset+8]
-		if e.Shape == WordLE {
-			word = binary.LittleEndian.Uint64(w)
-		} else {
-			word = binary.BigEndian.Uint64(w)
-		}
-	} else {
-		var w [8]byte
-		copy(w[:], payload[e.Offset:])
-		if e.Shape == WordLE {
-			word = binary.LittleEndian.Uint64(w[:])
-		} else {
-			word = binary.BigEndian.Uint64(w[:])
-		}
+	if len(payload) < e.Offset+8 {
+		return e.short(payload)
+	}
+	word := binary.LittleEndian.Uint64(payload[e.Offset:])
+	if e.Shape == WordBE {
+		word = bits.ReverseBytes64(word)
+	}
+	return word >> (e.Shift & 63) & e.Mask
+}
+
+// short is Raw of a payload that has fewer than 8 bytes from Offset on.
+func (e *Extractor) short(payload []byte) uint64 {
+	var w [8]byte
+	copy(w[:], payload[e.Offset:])
+	word := binary.LittleEndian.Uint64(w[:])
+	if e.Shape == WordBE {
+		word = bits.ReverseBytes64(word)
 	}
 	return word >> (e.Shift & 63) & e.Mask
 }
@@ -109,45 +114,4 @@ func (e *Extractor) gather(payload []byte) uint64 {
 		v = v<<p.width | uint64(payload[p.at])>>p.shift&(1<<p.width-1)
 	}
 	return v
-}
-
-// Insert puts raw's lowest bits into the place of a payload that reaches it;
-// the payload's other bits stay.
-func Insert(payload []byte, p Place, raw uint64) {
-	left := p.Width()
-	for _, r := range p.Runs {
-		for _, q := range r.pieces() {
-			left -= int(q.width)
-			mask := byte(1<<q.width-1) << q.shift
-			payload[q.at] = payload[q.at]&^mask | byte(raw>>left<<q.shift)&mask
-		}
-	}
-}
-
-// AppendBytes appends the bytes of a place made of whole bytes (text, raw
-// bytes), heaviest byte first.
-func AppendBytes(dst, payload []byte, p Place) []byte {
-	for _, r := range p.Runs {
-		step := 1
-		if r.Light.Byte < r.Heavy.Byte {
-			step = -1
-		}
-		for b := r.Heavy.Byte; ; b += step {
-			dst = append(dst, payload[b])
-			if b == r.Light.Byte {
-				break
-			}
-		}
-	}
-	return dst
-}
-
-// WholeBytes reports whether every run starts at a bit 7 and ends at a bit 0.
-func (p Place) WholeBytes() bool {
-	for _, r := range p.Runs {
-		if r.Heavy.Bit != 7 || r.Light.Bit != 0 {
-			return false
-		}
-	}
-	return true
 }

@@ -2,10 +2,18 @@ package bits
 
 import "math"
 
-// SignExtend reads width bits as two's complement.
+// The raw values of this file are right-aligned and have no bit above width.
+
+// SignExtend reads width bits (1 to 64) as two's complement.
 func SignExtend(raw uint64, width int) int64 {
 	shift := uint(64 - width)
 	return int64(raw<<shift) >> shift
+}
+
+// PutSigned is the inverse of SignExtend; ok is false if the value doesn't fit.
+func PutSigned(v int64, width int) (raw uint64, ok bool) {
+	raw = uint64(v) & (^uint64(0) >> (64 - width))
+	return raw, SignExtend(raw, width) == v
 }
 
 // SignMagnitude reads width bits as a sign (heaviest bit) and a magnitude.
@@ -29,15 +37,18 @@ func PutSignMagnitude(v int64, width int) (raw uint64, ok bool) {
 	return sign | m, m < 1<<(width-1)
 }
 
-// PackedDecimal reads width bits as decimal digits of four bits each, heaviest
-// first; ok is false if a digit is above 9.
+// PackedDecimal reads width bits as decimal digits of four bits each, counted
+// from the lightest; the heaviest digit may have fewer. ok is false if a digit
+// is above 9.
 func PackedDecimal(raw uint64, width int) (v uint64, ok bool) {
-	for shift := width - 4; shift >= 0; shift -= 4 {
+	power := uint64(1)
+	for shift := 0; shift < width; shift += 4 {
 		digit := raw >> shift & 15
 		if digit > 9 {
 			return 0, false
 		}
-		v = v*10 + digit
+		v += digit * power
+		power *= 10
 	}
 	return v, true
 }
@@ -49,10 +60,11 @@ func PutPackedDecimal(v uint64, width int) (raw uint64, ok bool) {
 		raw |= v % 10 << shift
 		v /= 10
 	}
-	return raw, v == 0
+	return raw, v == 0 && raw&^(^uint64(0)>>(64-width)) == 0
 }
 
-// Float reads 16, 32 or 64 bits as an IEEE 754 number.
+// Float reads 16, 32 or 64 bits as an IEEE 754 number (binary16, binary32,
+// binary64). Every such number is exact in a float64.
 func Float(raw uint64, width int) float64 {
 	switch width {
 	case 16:
@@ -82,7 +94,8 @@ func half(h uint16) float64 {
 	return sign * math.Ldexp(1024+fraction, exponent-25)
 }
 
-// PutFloat is the inverse of Float, rounding half to even.
+// PutFloat is the inverse of Float, rounding half to even; what is too large
+// becomes an infinity. A NaN stays one, but its payload may change.
 func PutFloat(v float64, width int) uint64 {
 	switch width {
 	case 16:

@@ -31,8 +31,10 @@ func parseBit(text string) (Bit, error) {
 	whole, bit, ok := strings.Cut(text, ".")
 	b, err1 := strconv.ParseUint(whole, 10, 16)
 	i, err2 := strconv.ParseUint(bit, 10, 16)
-	if !ok || err1 != nil || err2 != nil {
+	at := Bit{Byte: int(b), Bit: int(i)}
+	// One way to write each position: no leading zeros.
+	if !ok || err1 != nil || err2 != nil || at.String() != text {
 		return Bit{}, fmt.Errorf("%q is not a position such as 0.7", text)
 	}
-	return Bit{Byte: int(b), Bit: int(i)}, nil
+	return at, nil
 }

@@ -1,6 +1,7 @@
 package bits
 
-// Set is a set of bits of one payload; the zero Set is empty.
+// Set is a set of the bits of one payload of up to 64 bytes; the zero Set is
+// empty, and an assignment copies it.
 type Set struct {
 	bytes [MaxByte + 1]byte
 }
@@ -12,30 +13,32 @@ func (s *Set) Add(p Place) {
 	}
 }
 
-// Overlap returns the first bit of p (heaviest first) that is in the set.
+// Has reports whether the bit is in the set.
+func (s *Set) Has(b Bit) bool { return s.bytes[b.Byte]>>b.Bit&1 != 0 }
+
+// Overlap returns the first bit of a legal place, heaviest first, that is in
+// the set.
 func (s *Set) Overlap(p Place) (Bit, bool) {
 	for _, b := range p.Bits() {
-		if s.bytes[b.Byte]>>b.Bit&1 != 0 {
+		if s.Has(b) {
 			return b, true
 		}
 	}
 	return Bit{}, false
 }
 
-// Has reports whether the bit is in the set.
-func (s *Set) Has(b Bit) bool { return s.bytes[b.Byte]>>b.Bit&1 != 0 }
-
-// Missing lists the bits of a payload of size bytes that aren't in the set, as
-// runs within the text's order: whole stretches, heavy byte first.
+// Missing lists the bits of a payload of up to 64 bytes that aren't in the
+// set, from byte 0 bit 7 on, as the longest runs, heavy byte first.
 func (s *Set) Missing(size int) []Run {
 	var out []Run
 	open := false
 	for at := (Bit{0, 7}); at.Byte < size; {
-		if s.Has(at) {
+		switch {
+		case s.Has(at):
 			open = false
-		} else if open {
+		case open:
 			out[len(out)-1].Light = at
-		} else {
+		default:
 			out = append(out, Run{at, at})
 			open = true
 		}

@@ -13,7 +13,8 @@ type Engine struct {
 	table [256]uint64
 }
 
-// Validate reports parameters that no CRC has.
+// Validate reports parameters that no CRC has, for the user and without
+// position.
 func (p Params) Validate() error {
 	if p.Width < 1 || p.Width > 64 {
 		return fmt.Errorf("a CRC has 1 to 64 bits, not %d", p.Width)
@@ -23,6 +24,9 @@ func (p Params) Validate() error {
 	case p.Poly&^m != 0:
 		return fmt.Errorf("the polynomial 0x%X needs more than %d bits (its top bit isn't written)", p.Poly, p.Width)
 	case p.Poly&1 == 0:
+		if turned := reflect(p.Poly, p.Width); turned&1 != 0 {
+			return fmt.Errorf("the polynomial 0x%X has no constant term: written heaviest bit first its lightest bit is 1, as in 0x%X", p.Poly, turned)
+		}
 		return fmt.Errorf("the polynomial 0x%X has no constant term: its lightest bit must be 1", p.Poly)
 	case p.Init&^m != 0:
 		return fmt.Errorf("the initial value 0x%X needs more than %d bits", p.Init, p.Width)
@@ -117,3 +121,7 @@ func (e *Engine) Finish(reg uint64) uint64 {
 
 // Checksum is the checksum of data alone.
 func (e *Engine) Checksum(data []byte) uint64 { return e.Finish(e.Update(e.Start(), data)) }
+
+// Check is the CRC of the nine ASCII bytes 123456789, by which the trade
+// compares parameters.
+func (e *Engine) Check() uint64 { return e.Checksum([]byte("123456789")) }

@@ -12,7 +12,7 @@ var named = []Params{
 	{Name: "crc64", Width: 64, Poly: 0x42F0E1EBA9EA3693, Init: ^uint64(0), ReflectIn: true, ReflectOut: true, XorOut: ^uint64(0)},
 }
 
-// Named returns the parameters of a named CRC.
+// Named returns the parameters of a named CRC (see Names).
 func Named(name string) (Params, bool) {
 	for _, p := range named {
 		if p.Name == name {
@@ -22,9 +22,9 @@ func Named(name string) (Params, bool) {
 	return Params{}, false
 }
 
-// Names lists the named CRCs.
+// Names lists the named CRCs, narrowest first.
 func Names() []string {
-	var out []string
+	out := make([]string, 0, len(named))
 	for _, p := range named {
 		out = append(out, p.Name)
 	}
