@@ -130,7 +130,7 @@ func makeCapture(path string, lines int64) error {
 		return err
 	}
 	w := bufio.NewWriterSize(f, 1<<20)
-	if err := heron.WriteDrive(w, lines); err != nil {
+	if err := heron.Write(w, heron.Bench, heron.Options{Frames: lines}); err != nil {
 		return err
 	}
 	if err := w.Flush(); err != nil {

@@ -132,7 +132,7 @@ func brakeContacts(v *vehicle) uint64 {
 
 func brakePedal(v *vehicle, d []byte, n uint64) {
 	up(d, 0, 0, 4, brakeContacts(v))
-	d[1] = byte(scaled(v.brake.master*0.7, 0.5, 200))
+	d[1] = byte(scaled(float64(v.brake.master*0.7), 0.5, 200))
 	d[2] = byte(n % 16)
 	d[3] = sum8(d[:3])
 }
@@ -213,17 +213,18 @@ func steeringState(v *vehicle, d []byte, n uint64) {
 }
 
 func suspensionCorners(v *vehicle, d []byte, n uint64) {
+	road := v.random // a copy: what is sent must not change what happens
 	for i := range v.wheels {
 		pitch := float64(v.acceleration * 3)
 		if i >= rearLeft {
 			pitch = -pitch
 		}
 		at := 4 + 5*i
-		bump := float64(v.random.peek(2001)-1000) / 1000
+		bump := float64(road.below(2001)-1000) / 1000
 		if v.speed == 0 {
 			bump = 0
 		}
-		down(d, at, 7, 16, signed(pitch+float64(bump*2.5)+float64(side(i)*v.steering.lateral*2), 0.1, 1500))
+		down(d, at, 7, 16, signed(pitch+float64(bump*2.5)+float64(side(i)*float64(v.steering.lateral*2)), 0.1, 1500))
 		d[at+2] = byte(scaled(0.4+float64(v.speed*0.01), 0.01, 200))
 		up(d, at+3, 0, 16, half(bump*0.9))
 	}

@@ -45,7 +45,6 @@ func flag(d []byte, byte_, bit int, on bool) {
 
 // whole rounds to the nearest whole number and keeps it within low..high.
 func whole(x float64, low, high int64) int64 {
-	x = float64(x) // a product must not be fused with what is added below
 	if !(x > float64(low)) {
 		return low
 	}
@@ -59,14 +58,14 @@ func whole(x float64, low, high int64) int64 {
 }
 
 // scaled is the raw value of a quantity x in steps, never above high.
-func scaled(x, step float64, high int64) uint64 { return uint64(whole(x/step, 0, high)) }
+func scaled(x, step float64, high int64) uint64 { return uint64(whole(float64(x/step), 0, high)) }
 
 // signed is the two's complement raw value of x in steps, within +-high.
-func signed(x, step float64, high int64) uint64 { return uint64(whole(x/step, -high, high)) }
+func signed(x, step float64, high int64) uint64 { return uint64(whole(float64(x/step), -high, high)) }
 
 // signMagnitude is the raw value of x with a sign bit above width-1 bits.
 func signMagnitude(x, step float64, width int, high int64) uint64 {
-	n := whole(x/step, -high, high)
+	n := whole(float64(x/step), -high, high)
 	if n < 0 {
 		return 1<<(width-1) | uint64(-n)
 	}
@@ -92,15 +91,15 @@ func half(x float64) uint64 {
 	}
 	exponent := uint64(15)
 	for x >= 2 {
-		x, exponent = x/2, exponent+1
+		x, exponent = float64(x/2), exponent+1
 	}
 	for x < 1 {
 		if exponent == 1 {
 			return sign
 		}
-		x, exponent = x*2, exponent-1
+		x, exponent = float64(x*2), exponent-1
 	}
-	return sign | exponent<<10 | uint64((x-1)*1024)
+	return sign | exponent<<10 | uint64(int64((x-1)*1024))
 }
 
 // single is x as an IEEE 754 single precision number.

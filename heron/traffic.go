@@ -71,11 +71,12 @@ func newNetwork(c *script) *network {
 	for b := range n.earlier {
 		n.earlier[b] = never
 	}
+	late := func() int64 { return n.random.below(900) }
 	for i := range c.stray {
-		n.lones = append(n.lones, lone{at: c.stray[i].at, stray: &c.stray[i]})
+		n.lones = append(n.lones, lone{at: c.stray[i].at + late(), stray: &c.stray[i]})
 	}
 	for i := range c.asks {
-		n.lones = append(n.lones, lone{at: c.asks[i].at, ask: &c.asks[i]})
+		n.lones = append(n.lones, lone{at: c.asks[i].at + late(), ask: &c.asks[i]})
 	}
 	n.soonestLone()
 	return n

@@ -317,6 +317,7 @@ type PlaceRun struct {
 // BitRef is byte.bit.
 type BitRef struct {
 	Byte, Bit int
+	Bad       bool // not of that form; told already
 	Span      diag.Span
 }
 

@@ -1,0 +1,64 @@
+package schema
+
+import (
+	"fmt"
+	"io"
+	"io/fs"
+	"os"
+	"path/filepath"
+
+	"busloom/diag"
+	"busloom/schema/internal/syntax"
+)
+
+// Files is where Compile reads descriptions from. Paths have forward slashes
+// and are relative to wherever the root's path is relative to.
+type Files interface {
+	Read(path string) ([]byte, error)
+}
+
+// largestFile bounds what is read into memory at once.
+const largestFile = 1 << 30
+
+type diskFiles struct{}
+
+// DiskFiles reads from the file system.
+func DiskFiles() Files { return diskFiles{} }
+
+func (diskFiles) Read(path string) ([]byte, error) {
+	f, err := os.Open(filepath.FromSlash(path))
+	if err != nil {
+		return nil, err
+	}
+	defer f.Close()
+	info, err := f.Stat()
+	if err != nil {
+		return nil, err
+	}
+	if info.IsDir() {
+		return nil, fmt.Errorf("it is a folder")
+	}
+	text, err := io.ReadAll(io.LimitReader(f, largestFile+1))
+	if err == nil && len(text) > largestFile {
+		err = fmt.Errorf("it is larger than %d MiB", largestFile>>20)
+	}
+	return text, err
+}
+
+// MapFiles are files in memory: path to text.
+type MapFiles map[string]string
+
+// Read implements Files.
+func (m MapFiles) Read(path string) ([]byte, error) {
+	text, ok := m[path]
+	if !ok {
+		return nil, &fs.PathError{Op: "open", Path: path, Err: fs.ErrNotExist}
+	}
+	return []byte(text), nil
+}
+
+// Format lays a description out in the one way of the language. ok is false,
+// and the problems say why, if the text can't be read.
+func Format(src *diag.File, problems *diag.List) (text []byte, ok bool) {
+	return syntax.Format(src, problems)
+}
