@@ -138,7 +138,7 @@ func (p *parser) branch(s *Select, at piece, depth int) {
 		s.Whens = append(s.Whens, w)
 		return
 	}
-	o := &Otherwise{Span: p.tokenSpan(&p.tokens[at.from]), Body: body}
+	o := &Otherwise{Span: p.tokenSpan(&p.tokens[at.from]), Whole: span, Body: body}
 	if hasBody {
 		if open != at.from+1 {
 			p.unexpected(at, p.tokens[at.from+1].Pos.Offset, "nothing, unknown or {")

@@ -60,7 +60,8 @@ func (p *parser) texts(tokens []token) Text {
 		}
 		out.Span = out.Span.To(span)
 		out.Given = true
-		out.Value += unquote(t.Value)
+		out.Parts = append(out.Parts, unquote(t.Value))
+		out.Value += out.Parts[i]
 	}
 	return out
 }

@@ -41,6 +41,7 @@ type Name struct {
 type Text struct {
 	Value string
 	Given bool
+	Parts []string // as written one by one, joined in Value
 	Span  diag.Span
 }
 
@@ -430,9 +431,10 @@ type ChoiceRef struct {
 
 // Otherwise is what unlisted selector values mean.
 type Otherwise struct {
-	Span diag.Span
-	Word string // nothing, unknown; empty with a body
-	Body *Body
+	Span  diag.Span // the word otherwise
+	Whole diag.Span
+	Word  string // nothing, unknown; empty with a body
+	Body  *Body
 }
 
 // FromFact: from Brake to Cluster, Gateway.
