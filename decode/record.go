@@ -81,5 +81,6 @@ type Record struct {
 	UnknownSelection bool
 	Checksum         Check
 	Counter          Check
+	CounterRaw       uint64 // the counter's bits, unless Counter is Unchecked
 	Steps            uint64 // lost steps, for Lost
 }

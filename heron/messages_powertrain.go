@@ -65,10 +65,10 @@ func pedalTracks(v *vehicle, d []byte, n uint64) {
 	flag(d, 1, 4, pedal > 97)
 	flag(d, 1, 5, pedal == 0)
 	noise := float64(v.random.peek(7)-3) / 1000
-	first := 0.75 + float64(pedal*0.03) + noise
-	second := 0.375 + float64(pedal*0.015) - float64(noise/2)
-	down(d, 2, 7, 12, scaled(first, 0.00125, 4000))
-	down(d, 4, 7, 12, scaled(second, 0.00125, 4000))
+	track := 0.75 + float64(pedal*0.03) + noise
+	half := 0.375 + float64(pedal*0.015) - float64(noise/2)
+	down(d, 2, 7, 12, scaled(track, 0.00125, 4000))
+	down(d, 4, 7, 12, scaled(half, 0.00125, 4000))
 	d[6] = byte(scaled(pedal, 0.4, 250))
 	d[7] = byte(scaled(v.demand(), 0.4, 250))
 	profile2(d, &pedalIDs, n)
@@ -99,7 +99,8 @@ func engineTorque(v *vehicle, d []byte, n uint64) {
 	profile1(d, idAlternating, 0x0C0, n)
 }
 
-func (g *gearbox) raw(gear int) uint64 {
+// gearRaw is the raw value of a gear.
+func gearRaw(gear int) uint64 {
 	if gear == 0 {
 		return 8 // park
 	}
@@ -108,8 +109,8 @@ func (g *gearbox) raw(gear int) uint64 {
 
 func gearboxState(v *vehicle, d []byte, n uint64) {
 	g := &v.gearbox
-	up(d, 2, 0, 4, g.raw(g.gear))
-	up(d, 2, 4, 4, g.raw(g.target))
+	up(d, 2, 0, 4, gearRaw(g.gear))
+	up(d, 2, 4, 4, gearRaw(g.target))
 	up(d, 3, 0, 16, scaled(g.output, 0.25, 32000))
 	up(d, 5, 0, 16, scaled(g.turbine, 0.25, 32000))
 	d[7] = byte(scaled(g.oil+40, 1, 220))

@@ -77,7 +77,7 @@ func (m *mixture) cycle(v *vehicle) {
 	m.heat += float64((float64(m.heater*7) + float64(e.flow*14) + v.ambient - m.heat) * dt / 16)
 	m.ready = m.ready || m.heat > probeReadyAt
 
-	m.select_(v)
+	m.choose(v)
 	// Rich while cold, and at full load; exactly stoichiometric in the loop.
 	switch m.loop {
 	case loopCold:
@@ -133,8 +133,8 @@ func (m *mixture) cycle(v *vehicle) {
 	m.long = clamp(m.long+float64(0.0006*m.short), -0.2, 0.2)
 }
 
-// select_ chooses the loop's state.
-func (m *mixture) select_(v *vehicle) {
+// choose chooses the loop's state.
+func (m *mixture) choose(v *vehicle) {
 	e := &v.engine
 	switch {
 	case m.confirmed:

@@ -5,41 +5,41 @@ import "math"
 // The plain encoder: bits one after the other, as the layout says them.
 
 // down writes the width lightest bits of value, heaviest first, from bit
-// heavy of byte: down to bit 0 and on at bit 7 of the next byte.
-func down(d []byte, byte_, heavy, width int, value uint64) {
+// heavy of byte from: down to bit 0 and on at bit 7 of the next byte.
+func down(d []byte, from, heavy, width int, value uint64) {
 	for i := width - 1; i >= 0; i-- {
 		if value>>i&1 != 0 {
-			d[byte_] |= 1 << heavy
+			d[from] |= 1 << heavy
 		} else {
-			d[byte_] &^= 1 << heavy
+			d[from] &^= 1 << heavy
 		}
 		if heavy--; heavy < 0 {
-			byte_, heavy = byte_+1, 7
+			from, heavy = from+1, 7
 		}
 	}
 }
 
 // up writes the width lightest bits of value, lightest first, from bit light
-// of byte: up to bit 7 and on at bit 0 of the next byte.
-func up(d []byte, byte_, light, width int, value uint64) {
+// of byte from: up to bit 7 and on at bit 0 of the next byte.
+func up(d []byte, from, light, width int, value uint64) {
 	for i := range width {
 		if value>>i&1 != 0 {
-			d[byte_] |= 1 << light
+			d[from] |= 1 << light
 		} else {
-			d[byte_] &^= 1 << light
+			d[from] &^= 1 << light
 		}
 		if light++; light > 7 {
-			byte_, light = byte_+1, 0
+			from, light = from+1, 0
 		}
 	}
 }
 
 // flag writes one bit.
-func flag(d []byte, byte_, bit int, on bool) {
+func flag(d []byte, from, bit int, on bool) {
 	if on {
-		d[byte_] |= 1 << bit
+		d[from] |= 1 << bit
 	} else {
-		d[byte_] &^= 1 << bit
+		d[from] &^= 1 << bit
 	}
 }
 

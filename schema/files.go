@@ -6,9 +6,6 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
-
-	"busloom/diag"
-	"busloom/schema/internal/syntax"
 )
 
 // Files is where Compile reads descriptions from. Paths have forward slashes
@@ -55,10 +52,4 @@ func (m MapFiles) Read(path string) ([]byte, error) {
 		return nil, &fs.PathError{Op: "open", Path: path, Err: fs.ErrNotExist}
 	}
 	return []byte(text), nil
-}
-
-// Format lays a description out in the one way of the language. ok is false,
-// and the problems say why, if the text can't be read.
-func Format(src *diag.File, problems *diag.List) (text []byte, ok bool) {
-	return syntax.Format(src, problems)
 }

@@ -116,7 +116,13 @@ func (k Kind) isText() bool { return k == TextASCII || k == TextUTF8 || k == Byt
 // returns it in the draft's bytes.
 func (c *compiler) place(t syntax.Place, s scope, d *draft, path string, sig *Signal) (bits.Place, bool) {
 	var out bits.Place
+	if len(t.Runs) == 0 {
+		return out, false
+	}
 	for i, r := range t.Runs {
+		if r.Heavy.Bad || (r.Light != nil && r.Light.Bad) {
+			return out, false // told when it was read
+		}
 		if r.Relative != (s.shape != nil) {
 			if r.Relative {
 				c.report(diag.RelativePlace, r.Span, fmt.Sprintf("%s counts from the start of a shape, and this isn't inside one", r.Span.Text()), "remove the +")

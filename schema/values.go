@@ -209,11 +209,6 @@ func (c *compiler) checkRangeCodes(m *member) bool {
 	}
 	a, okA := s.back(s.Range.Low)
 	b, okB := s.back(s.Range.High)
-	if s.Curve != nil && s.Curve.Outside == Hold {
-		// The ends of the curve are given by all that lies beyond them, too,
-		// but those raw values are only held: only the curve itself counts.
-		okA, okB = a != nil, b != nil
-	}
 	if !okA || !okB {
 		return true
 	}

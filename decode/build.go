@@ -1,0 +1,321 @@
+package decode
+
+import (
+	"fmt"
+	"math/big"
+
+	"busloom/bits"
+	"busloom/schema"
+	"busloom/unit"
+)
+
+// op says what a step does with its raw value.
+type op uint8
+
+const (
+	opScaled  op = iota // a number: num = x*mul + add, or a code
+	opTable             // what the dense table says: states, flags, narrow numbers with codes
+	opGeneral           // any other kind of up to 64 bits
+	opText
+	opOctets
+	opSelect // a selection
+)
+
+// source says where a step's raw value comes from.
+type source uint8
+
+const (
+	fromLE        source = iota // the first 8 bytes, light byte first
+	fromBE                      // the first 8 bytes, heavy byte first
+	fromElsewhere               // further behind, or bit by bit
+)
+
+// step is one instruction of a message's program: take a value, or select.
+type step struct {
+	signal *Signal
+	op     op
+	from   source
+	shift  uint8
+	extend uint8 // 64 - width of a signed value, else 0
+	need   uint8 // payload bytes
+	mask   uint64
+	// coded is the least raw value that is a code (or needs another look);
+	// all below it are plain numbers.
+	coded    uint64
+	mul, add int64
+
+	extract *bits.Extractor
+	choose  *selection
+}
+
+// selection is what a selector chooses among.
+type selection struct {
+	selector bits.Extractor
+	branches [][]step
+	// dense has the branch + 1 of each value of a narrow selector.
+	dense   []int16
+	ranges  []branchRange
+	other   []step // the otherwise branch
+	unknown bool   // otherwise unknown
+}
+
+type branchRange struct {
+	schema.RawRange
+	branch int
+}
+
+type builder struct {
+	plan    *Plan
+	message *Message
+	only    patterns
+	units   *conversions
+}
+
+func (b *builder) build() error {
+	m := b.message.Model
+	index := map[*schema.Signal]int{}
+	for i, s := range m.Signals {
+		index[s] = i
+	}
+	var always []*schema.Signal
+	for _, s := range m.Signals {
+		if len(s.When) == 0 {
+			always = append(always, s)
+		}
+		if s.Counter != nil && b.message.counter == nil && len(s.When) == 0 {
+			e := bits.Compile(s.Place)
+			b.message.counter, b.message.rule = &e, s.Counter
+		}
+		if s.Checksum != nil && b.message.checksum == nil && len(s.When) == 0 {
+			b.message.checksum = newChecksum(s)
+		}
+	}
+	var err error
+	if b.message.program, err = b.steps(always, m.Selects, index); err != nil {
+		return err
+	}
+	b.idFields()
+	b.message.Wanted = len(b.message.Signals) > 0 || len(b.only) == 0 || (len(m.Signals) == 0 && b.only.wants(m.Name, ""))
+	return nil
+}
+
+// steps makes the program of some signals and selections, in text order.
+func (b *builder) steps(signals []*schema.Signal, selects []*schema.Select, index map[*schema.Signal]int) ([]step, error) {
+	var out []step
+	for _, s := range signals {
+		for len(selects) > 0 && firstSignal(selects[0], index) < index[s] {
+			st, err := b.selectStep(selects[0], index)
+			if err != nil {
+				return nil, err
+			}
+			out = append(out, st)
+			selects = selects[1:]
+		}
+		if !b.only.wants(b.message.Model.Name, s.Name) {
+			continue
+		}
+		st, err := b.signalStep(s)
+		if err != nil {
+			return nil, fmt.Errorf("signal %s: %w", s.Name, err)
+		}
+		out = append(out, st)
+	}
+	for _, sel := range selects {
+		st, err := b.selectStep(sel, index)
+		if err != nil {
+			return nil, err
+		}
+		out = append(out, st)
+	}
+	return out, nil
+}
+
+// firstSignal is the text position of a selection's first signal.
+func firstSignal(s *schema.Select, index map[*schema.Signal]int) int {
+	first := len(index)
+	branch := func(b *schema.Branch) {
+		for _, x := range b.Signals {
+			first = min(first, index[x])
+		}
+		for _, x := range b.Selects {
+			first = min(first, firstSignal(x, index))
+		}
+	}
+	for i := range s.Branches {
+		branch(&s.Branches[i])
+	}
+	if s.Else != nil {
+		branch(s.Else)
+	}
+	return first
+}
+
+func (b *builder) selectStep(s *schema.Select, index map[*schema.Signal]int) (step, error) {
+	c := &selection{selector: bits.Compile(s.Selector.Place), unknown: s.Otherwise == schema.OtherwiseUnknown}
+	if s.Selector.Width <= denseWidth {
+		c.dense = make([]int16, 1<<s.Selector.Width)
+	}
+	for i := range s.Branches {
+		program, err := b.steps(s.Branches[i].Signals, s.Branches[i].Selects, index)
+		if err != nil {
+			return step{}, err
+		}
+		c.branches = append(c.branches, program)
+		for _, r := range s.Branches[i].Values {
+			c.ranges = append(c.ranges, branchRange{r, i})
+			for v := r.Low; c.dense != nil && v <= r.High && v < uint64(len(c.dense)); v++ {
+				c.dense[v] = int16(i + 1)
+			}
+		}
+	}
+	if s.Else != nil {
+		program, err := b.steps(s.Else.Signals, s.Else.Selects, index)
+		if err != nil {
+			return step{}, err
+		}
+		c.other = program
+	}
+	return step{op: opSelect, choose: c, need: uint8(c.selector.Need())}, nil
+}
+
+// choose returns the program for a selector's value.
+func (c *selection) program(raw uint64) (program []step, listed bool) {
+	if c.dense != nil {
+		if i := c.dense[raw]; i > 0 {
+			return c.branches[i-1], true
+		}
+		return c.other, false
+	}
+	for _, r := range c.ranges {
+		if raw >= r.Low && raw <= r.High {
+			return c.branches[r.branch], true
+		}
+	}
+	return c.other, false
+}
+
+// register gives a signal its place in the plan.
+func (b *builder) register(s *Signal) {
+	s.Message = b.message
+	s.Index = len(b.plan.Signals)
+	b.plan.Signals = append(b.plan.Signals, s)
+	b.message.Signals = append(b.message.Signals, s)
+}
+
+func (b *builder) signalStep(model *schema.Signal) (step, error) {
+	s := &Signal{
+		Model: model, Path: model.Name, Unit: model.Unit, kind: model.Kind, width: model.Width,
+		states: model.States, place: model.Place, toEnd: model.ToEnd, fixed: model.Fixed,
+	}
+	for _, c := range model.Codes {
+		s.codes = append(s.codes, code{c.Raw.Low, c.Raw.High})
+	}
+	b.register(s)
+	st := step{signal: s, need: uint8(model.Place.LastByte() + 1)}
+	switch model.Kind {
+	case schema.TextASCII, schema.TextUTF8:
+		st.op = opText
+		if model.FillByte != nil {
+			s.fill = []byte{*model.FillByte}
+		}
+		return st, nil
+	case schema.Bytes:
+		st.op = opOctets
+		return st, nil
+	case schema.Flag:
+		s.Words = []string{"off", "on"}
+	case schema.States:
+		for _, x := range model.States {
+			s.Words = append(s.Words, x.Name)
+		}
+	}
+	if s.IsNumber() {
+		b.convert(s)
+	}
+	st.place(model.Place)
+	s.fillDense()
+	st.setOp(s)
+	return st, nil
+}
+
+// convert prepares the conversion of a number, with the unit that is wanted.
+func (b *builder) convert(s *Signal) {
+	one, zero := big.NewRat(1, 1), new(big.Rat)
+	a, c := one, zero
+	if s.Model != nil && s.Model.Affine != nil {
+		a, c = s.Model.Affine.A, s.Model.Affine.B
+	}
+	var post *line
+	if to, ok := b.units.of(s.Unit); ok {
+		x, y, exact, err := unit.Convert(s.Unit, to)
+		if err == nil { // proven when the options were read
+			post = &line{a: x, b: y, exact: exact}
+			s.Unit = to
+		}
+	}
+	var curve *schema.Curve
+	if s.Model != nil {
+		curve = s.Model.Curve
+	}
+	s.setConversion(a, c, curve, post)
+}
+
+// place sets where the raw value comes from.
+func (st *step) place(p bits.Place) {
+	e := bits.Compile(p)
+	st.extract = &e
+	st.shift, st.mask = e.Shift&63, e.Mask
+	switch {
+	case e.Shape == bits.Pieces, e.Offset > 0:
+		st.from = fromElsewhere
+	case e.Shape == bits.WordBE:
+		st.from = fromBE
+	default:
+		st.from = fromLE
+	}
+}
+
+// fillDense makes the table of a narrow signal's meanings.
+func (s *Signal) fillDense() {
+	if s.width > denseWidth || s.kind == schema.Float {
+		return
+	}
+	table := make([]meaning, 1<<s.width)
+	for raw := range table {
+		table[raw] = s.search(uint64(raw))
+	}
+	s.dense = table
+}
+
+// setOp finds the cheapest instruction for a signal.
+func (st *step) setOp(s *Signal) {
+	st.op = opGeneral
+	switch {
+	case s.dense != nil && !s.IsNumber():
+		st.op = opTable
+	case s.Scaled && s.curve == nil && s.round.r == 1 && s.fixed == nil && (s.kind == schema.Unsigned || s.kind == schema.Signed || s.kind == schema.Counter || s.kind == schema.Checksum):
+		st.op = opScaled
+		st.mul, st.add = s.round.p, s.round.q
+		if s.kind == schema.Signed {
+			st.extend = uint8(64 - s.width)
+		}
+		st.coded = ^uint64(0)
+		if len(s.codes) > 0 {
+			st.coded = s.codes[0].low
+		}
+	}
+}
+
+// idFields adds the open fields of the identifier as signals.
+func (b *builder) idFields() {
+	for _, f := range b.message.Model.ID.Fields {
+		name := "id." + f.Name
+		if !f.Open || !b.only.wants(b.message.Model.Name, name) {
+			continue
+		}
+		s := &Signal{Path: name, kind: schema.Unsigned, width: f.Width, idShift: f.Shift}
+		s.setConversion(big.NewRat(1, 1), new(big.Rat), nil, nil)
+		b.register(s)
+		b.message.ids = append(b.message.ids, s)
+	}
+}

@@ -1,0 +1,174 @@
+package decode
+
+import (
+	"encoding/binary"
+	"math"
+	mathbits "math/bits"
+
+	"busloom/bits"
+	"busloom/frame"
+	"busloom/schema"
+)
+
+// Decode makes of a frame what the plan says. It keeps no state and allocates
+// nothing once the record has room; several goroutines may run it, each with
+// its own record. The record refers to the frame.
+func (p *Plan) Decode(f *frame.Frame, r *Record) {
+	r.Frame, r.Message = f, nil
+	r.Values = r.Values[:0]
+	r.Fit, r.Checksum, r.Counter = FitExact, Unchecked, Unchecked
+	r.UnknownSelection, r.Steps = false, 0
+	if f.Flags&frame.Error != 0 {
+		r.Class = ErrorFrame
+		return
+	}
+	var bus *lookup
+	if int(f.Bus) < len(p.bound) {
+		bus = p.bound[f.Bus]
+	}
+	if bus == nil {
+		r.Class = Unmapped
+		return
+	}
+	m := bus.find(f.ID, f.Flags&frame.Extended != 0)
+	if f.Flags&frame.Remote != 0 {
+		r.Class, r.Message = RemoteFrame, m
+		return
+	}
+	if m == nil {
+		r.Class = Undescribed
+		return
+	}
+	r.Class, r.Message = Decoded, m
+	length := int(f.Len)
+	if length != m.size {
+		if length < m.size {
+			r.Fit = FitShort
+		} else if !m.atLeast {
+			r.Fit = FitLong
+		}
+	}
+	if cap(r.Values) < p.widest {
+		r.Values = make([]Value, 0, p.widest)
+	}
+	c := run{frame: f, record: r, values: r.Values[:cap(r.Values)], length: uint8(length)}
+	c.words[fromLE] = binary.LittleEndian.Uint64(f.Data[:8])
+	c.words[fromBE] = mathbits.ReverseBytes64(c.words[fromLE])
+	c.steps(m.program)
+	for _, s := range m.ids {
+		raw := uint64(f.ID) >> s.idShift & (1<<s.width - 1)
+		c.values[c.n] = Value{Signal: s, Raw: raw, Num: int64(raw), State: Number}
+		c.n++
+	}
+	r.Values = r.Values[:c.n]
+	if m.checksum != nil {
+		r.Checksum = m.checksum.check(f)
+	}
+	if m.counter != nil && m.counter.Need() <= length {
+		r.Counter, r.CounterRaw = First, m.counter.Raw(f.Data[:])
+	}
+}
+
+// run is the state of decoding one frame.
+type run struct {
+	frame  *frame.Frame
+	record *Record
+	values []Value
+	n      int
+	words  [2]uint64
+	length uint8
+}
+
+func (c *run) steps(program []step) {
+	for i := range program {
+		st := &program[i]
+		if st.op == opSelect {
+			c.choose(st)
+			continue
+		}
+		v := &c.values[c.n]
+		c.n++
+		v.Signal = st.signal
+		if st.need > c.length {
+			*v = Value{Signal: st.signal, State: Missing}
+			continue
+		}
+		var raw uint64
+		if st.from <= fromBE {
+			raw = c.words[st.from] >> (st.shift & 63) & st.mask
+		} else if st.extract != nil {
+			raw = st.extract.Raw(c.frame.Data[:])
+		}
+		v.Raw = raw
+		switch st.op {
+		case opScaled:
+			if raw >= st.coded {
+				if m := st.signal.lookUp(raw); m.state != Number {
+					v.Num, v.State, v.Index = 0, m.state, m.index
+					continue
+				}
+			}
+			v.State, v.Index = Number, 0
+			v.Num = (int64(raw<<(st.extend&63))>>(st.extend&63))*st.mul + st.add
+		case opTable:
+			m := st.signal.dense[raw]
+			v.Num, v.State, v.Index = 0, m.state, m.index
+		case opText:
+			v.Raw, v.Num, v.State, v.Index = 0, 0, Text, 0
+		case opOctets:
+			v.Raw, v.Num, v.State, v.Index = 0, 0, Octets, 0
+		default:
+			st.signal.general(v)
+		}
+	}
+}
+
+func (c *run) choose(st *step) {
+	if st.need > c.length {
+		return
+	}
+	program, listed := st.choose.program(st.choose.selector.Raw(c.frame.Data[:]))
+	if !listed && st.choose.unknown {
+		c.record.UnknownSelection = true
+	}
+	c.steps(program)
+}
+
+// general fills in a value of any kind from its raw bits.
+func (s *Signal) general(v *Value) {
+	m := s.lookUp(v.Raw)
+	v.Num, v.State, v.Index = 0, m.state, m.index
+	if m.state != Number {
+		return
+	}
+	if s.kind == schema.Float {
+		if x := bits.Float(v.Raw, s.width); math.IsNaN(x) || math.IsInf(x, 0) {
+			v.State = NotFinite
+		}
+		return
+	}
+	x, ok := s.integer(v.Raw)
+	if !ok {
+		v.State = Unknown
+		return
+	}
+	switch {
+	case s.curve != nil:
+		piece := s.curve.find(x)
+		if piece.none {
+			v.State = NoValue
+			return
+		}
+		v.Num = piece.of(x)
+	case s.round != nil:
+		if s.round.r == 1 {
+			v.Num = x*s.round.p + s.round.q
+		} else {
+			v.Num = s.round.of(x)
+		}
+	case s.pieces != nil:
+		if s.pieceOf(s.bigInteger(v.Raw)).digits < 0 {
+			v.State = NoValue
+		}
+	}
+}
