@@ -3,6 +3,7 @@ package decode
 import (
 	"fmt"
 	"math/big"
+	mathbits "math/bits"
 
 	"busloom/bits"
 	"busloom/schema"
@@ -13,9 +14,10 @@ import (
 type op uint8
 
 const (
-	opScaled  op = iota // a number: num = x*mul + add, or a code
-	opTable             // what the dense table says: states, flags, narrow numbers with codes
-	opGeneral           // any other kind of up to 64 bits
+	// opPlain is a number with num = x*mul + add, a state, a flag or a code,
+	// all in one way, so that the processor needn't guess which it is.
+	opPlain   op = iota
+	opGeneral    // any other kind of up to 64 bits
 	opText
 	opOctets
 	opSelect // a selection
@@ -33,19 +35,28 @@ const (
 // step is one instruction of a message's program: take a value, or select.
 type step struct {
 	signal *Signal
-	op     op
-	from   source
-	shift  uint8
-	extend uint8 // 64 - width of a signed value, else 0
-	need   uint8 // payload bytes
-	mask   uint64
-	// coded is the least raw value that is a code (or needs another look);
-	// all below it are plain numbers.
+	// opPlain: meanings[raw & mask] says what the value is; a wide number has
+	// only one meaning, and codes from coded on.
+	meanings []meaning
 	coded    uint64
+	sign     uint64 // the sign bit of a two's complement value, else 0
 	mul, add int64
 
-	extract *bits.Extractor
-	choose  *selection
+	mask  uint8
+	op    op
+	from  source
+	left  uint8 // the value is (word << left) >> right
+	right uint8
+	need  uint8 // payload bytes
+
+	// far is what is needed less often.
+	far *farStep
+}
+
+// farStep is the rest of a step.
+type farStep struct {
+	extract bits.Extractor // fromElsewhere
+	choose  *selection     // opSelect
 }
 
 // selection is what a selector chooses among.
@@ -69,6 +80,7 @@ type builder struct {
 	message *Message
 	only    patterns
 	units   *conversions
+	tables  apartTables
 }
 
 func (b *builder) build() error {
@@ -87,7 +99,7 @@ func (b *builder) build() error {
 			b.message.counter, b.message.rule = &e, s.Counter
 		}
 		if s.Checksum != nil && b.message.checksum == nil && len(s.When) == 0 {
-			b.message.checksum = newChecksum(s)
+			b.message.checksum = newChecksum(s, b.tables)
 		}
 	}
 	var err error
@@ -175,7 +187,7 @@ func (b *builder) selectStep(s *schema.Select, index map[*schema.Signal]int) (st
 		}
 		c.other = program
 	}
-	return step{op: opSelect, choose: c, need: uint8(c.selector.Need())}, nil
+	return step{op: opSelect, far: &farStep{choose: c}, need: uint8(c.selector.Need())}, nil
 }
 
 // choose returns the program for a selector's value.
@@ -263,11 +275,14 @@ func (b *builder) convert(s *Signal) {
 // place sets where the raw value comes from.
 func (st *step) place(p bits.Place) {
 	e := bits.Compile(p)
-	st.extract = &e
-	st.shift, st.mask = e.Shift&63, e.Mask
+	width := mathbits.Len64(e.Mask)
+	st.right = uint8(64 - width)
+	st.left = st.right - e.Shift
 	switch {
 	case e.Shape == bits.Pieces, e.Offset > 0:
 		st.from = fromElsewhere
+		st.left = st.right
+		st.far = &farStep{extract: e}
 	case e.Shape == bits.WordBE:
 		st.from = fromBE
 	default:
@@ -287,19 +302,29 @@ func (s *Signal) fillDense() {
 	s.dense = table
 }
 
+// number is the meaning of a wide signal's values below its first code.
+var number = []meaning{{state: Number}}
+
 // setOp finds the cheapest instruction for a signal.
 func (st *step) setOp(s *Signal) {
 	st.op = opGeneral
-	switch {
-	case s.dense != nil && !s.IsNumber():
-		st.op = opTable
-	case s.Scaled && s.curve == nil && s.round.r == 1 && s.fixed == nil && (s.kind == schema.Unsigned || s.kind == schema.Signed || s.kind == schema.Counter || s.kind == schema.Checksum):
-		st.op = opScaled
+	st.coded = ^uint64(0)
+	plain := s.Scaled && s.curve == nil && s.round.r == 1
+	switch s.kind {
+	case schema.Unsigned, schema.Counter, schema.Checksum:
+	case schema.Signed:
+		st.sign = 1 << (s.width - 1)
+	default:
+		plain = false
+	}
+	if plain {
 		st.mul, st.add = s.round.p, s.round.q
-		if s.kind == schema.Signed {
-			st.extend = uint8(64 - s.width)
-		}
-		st.coded = ^uint64(0)
+	}
+	switch {
+	case s.dense != nil && (plain || !s.IsNumber()):
+		st.op, st.meanings, st.mask = opPlain, s.dense, uint8(len(s.dense)-1)
+	case plain && s.fixed == nil:
+		st.op, st.meanings = opPlain, number
 		if len(s.codes) > 0 {
 			st.coded = s.codes[0].low
 		}

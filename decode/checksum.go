@@ -15,26 +15,98 @@ type checksum struct {
 	feeds   []schema.Feed
 	counter *bits.Extractor
 	need    int // payload bytes
+
+	// For narrow CRCs over a known number of bytes: the checksum of the
+	// constant bytes, what each payload byte adds to it, and what the bytes
+	// add that the counter chooses.
+	apart     bool
+	base      uint64
+	terms     []term
+	byCounter []uint16
 }
 
-func newChecksum(s *schema.Signal) *checksum {
+// term is a payload byte's part of a checksum.
+type term struct {
+	table *[256]uint16
+	at    uint8
+}
+
+// apartTables shares the tables of crc.Apart among the messages of a plan.
+type apartTables map[apartKey]*[256]uint16
+
+type apartKey struct {
+	params crc.Params
+	after  int
+}
+
+func (t apartTables) get(e *crc.Engine, after int) *[256]uint16 {
+	key := apartKey{e.Params(), after}
+	key.params.Name = ""
+	if t[key] == nil {
+		t[key] = e.Apart(after)
+	}
+	return t[key]
+}
+
+func newChecksum(s *schema.Signal, tables apartTables) *checksum {
 	rule := s.Checksum
 	c := &checksum{place: bits.Compile(s.Place), feeds: rule.Feed, sum: rule.Method == "sum8"}
 	c.need = c.place.Need()
-	if rule.CRC != nil {
-		c.engine = crc.New(*rule.CRC)
-	}
 	if rule.Counter != nil {
 		e := bits.Compile(rule.Counter.Place)
 		c.counter = &e
 		c.need = max(c.need, e.Need())
 	}
+	length := 0
 	for _, f := range rule.Feed {
-		if f.Kind == schema.FeedBytes {
-			c.need = max(c.need, max(f.First, f.Last)+1)
+		switch {
+		case f.Kind != schema.FeedBytes:
+			length++
+		case f.Last < 0:
+			c.need = max(c.need, f.First)
+			length = -1 << 20 // unknown
+		default:
+			c.need = max(c.need, f.Last+1)
+			length += f.Last + 1 - f.First
+		}
+	}
+	if rule.CRC != nil {
+		c.engine = crc.New(*rule.CRC)
+		if rule.CRC.Width <= crc.MaxApart && length >= 0 {
+			c.takeApart(tables, length)
 		}
 	}
 	return c
+}
+
+// takeApart prepares the tables.
+func (c *checksum) takeApart(tables apartTables, length int) {
+	c.apart, c.base = true, c.engine.Zeros(length)
+	left := length
+	for _, f := range c.feeds {
+		switch f.Kind {
+		case schema.FeedBytes:
+			for at := f.First; at <= f.Last; at++ {
+				left--
+				c.terms = append(c.terms, term{tables.get(c.engine, left), uint8(at)})
+			}
+		case schema.FeedByCounter:
+			left--
+			if len(c.byCounter) != 0 && len(c.byCounter) != len(f.Table) {
+				c.apart = false // two tables of different lengths: rare, done bytewise
+				return
+			}
+			if c.byCounter == nil {
+				c.byCounter = make([]uint16, len(f.Table))
+			}
+			for i, b := range f.Table {
+				c.byCounter[i] ^= tables.get(c.engine, left)[b]
+			}
+		default:
+			left--
+			c.base ^= uint64(tables.get(c.engine, left)[f.Byte])
+		}
+	}
 }
 
 // check is Unchecked if the frame is too short for it.
@@ -43,9 +115,20 @@ func (c *checksum) check(f *frame.Frame) Check {
 		return Unchecked
 	}
 	var got uint64
-	if c.engine != nil {
+	switch {
+	case c.apart:
+		acc := uint16(0)
+		for i := range c.terms {
+			t := &c.terms[i]
+			acc ^= t.table[f.Data[t.at&(frame.MaxLen-1)]]
+		}
+		if c.byCounter != nil {
+			acc ^= c.byCounter[c.counter.Raw(f.Data[:])%uint64(len(c.byCounter))]
+		}
+		got = c.base ^ uint64(acc)
+	case c.engine != nil:
 		got = c.crc(f)
-	} else {
+	default:
 		got = uint64(c.bytewise(f))
 	}
 	if got == c.place.Raw(f.Data[:]) {
@@ -62,7 +145,7 @@ func stretch(feed *schema.Feed, f *frame.Frame) []byte {
 	return f.Data[feed.First : feed.Last+1]
 }
 
-func (c *checksum) byCounter(feed *schema.Feed, f *frame.Frame) byte {
+func (c *checksum) chosen(feed *schema.Feed, f *frame.Frame) byte {
 	return feed.Table[c.counter.Raw(f.Data[:])%uint64(len(feed.Table))]
 }
 
@@ -73,7 +156,7 @@ func (c *checksum) crc(f *frame.Frame) uint64 {
 		case schema.FeedBytes:
 			reg = c.engine.Update(reg, stretch(feed, f))
 		case schema.FeedByCounter:
-			reg = c.engine.UpdateByte(reg, c.byCounter(feed, f))
+			reg = c.engine.UpdateByte(reg, c.chosen(feed, f))
 		default:
 			reg = c.engine.UpdateByte(reg, feed.Byte)
 		}
@@ -81,6 +164,7 @@ func (c *checksum) crc(f *frame.Frame) uint64 {
 	return c.engine.Finish(reg)
 }
 
+// bytewise is the exclusive or, or the sum, of all that is fed.
 func (c *checksum) bytewise(f *frame.Frame) byte {
 	var reg byte
 	var one [1]byte
@@ -91,7 +175,7 @@ func (c *checksum) bytewise(f *frame.Frame) byte {
 		case schema.FeedBytes:
 			data = stretch(feed, f)
 		case schema.FeedByCounter:
-			one[0] = c.byCounter(feed, f)
+			one[0] = c.chosen(feed, f)
 		default:
 			one[0] = feed.Byte
 		}

@@ -76,9 +76,10 @@ func NewPlan(network *schema.Network, opts Options) (*Plan, error) {
 	for _, bus := range network.Buses {
 		p.byBus[bus.Name] = newLookup()
 	}
+	tables := apartTables{}
 	for _, model := range network.Messages {
 		m := &Message{Model: model, Bus: model.Bus.Name, Index: len(p.Messages), size: model.Size, atLeast: model.AtLeast}
-		b := &builder{plan: p, message: m, only: only, units: units}
+		b := &builder{plan: p, message: m, only: only, units: units, tables: tables}
 		if err := b.build(); err != nil {
 			return nil, fmt.Errorf("message %s: %w", model.Name, err)
 		}

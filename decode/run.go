@@ -51,16 +51,17 @@ func (p *Plan) Decode(f *frame.Frame, r *Record) {
 	if cap(r.Values) < p.widest {
 		r.Values = make([]Value, 0, p.widest)
 	}
-	c := run{frame: f, record: r, values: r.Values[:cap(r.Values)], length: uint8(length)}
+	c := run{frame: f, record: r, length: uint8(length)}
 	c.words[fromLE] = binary.LittleEndian.Uint64(f.Data[:8])
 	c.words[fromBE] = mathbits.ReverseBytes64(c.words[fromLE])
-	c.steps(m.program)
+	values := r.Values[:cap(r.Values)]
+	n := c.steps(m.program, values, 0)
 	for _, s := range m.ids {
 		raw := uint64(f.ID) >> s.idShift & (1<<s.width - 1)
-		c.values[c.n] = Value{Signal: s, Raw: raw, Num: int64(raw), State: Number}
-		c.n++
+		values[n] = Value{Signal: s, Raw: raw, Num: int64(raw), State: Number}
+		n++
 	}
-	r.Values = r.Values[:c.n]
+	r.Values = values[:n]
 	if m.checksum != nil {
 		r.Checksum = m.checksum.check(f)
 	}
@@ -69,50 +70,48 @@ func (p *Plan) Decode(f *frame.Frame, r *Record) {
 	}
 }
 
-// run is the state of decoding one frame.
+// run is what the steps of one frame need.
 type run struct {
 	frame  *frame.Frame
 	record *Record
-	values []Value
-	n      int
-	words  [2]uint64
+	words  [2]uint64 // the first 8 bytes, by fromLE and fromBE
 	length uint8
 }
 
-func (c *run) steps(program []step) {
+// steps runs a program; the values go into values from n on. It returns the
+// number of values then.
+func (c *run) steps(program []step, values []Value, n int) int {
+	words, length := c.words, c.length
 	for i := range program {
 		st := &program[i]
 		if st.op == opSelect {
-			c.choose(st)
+			n = c.choose(st, values, n)
 			continue
 		}
-		v := &c.values[c.n]
-		c.n++
+		v := &values[n]
+		n++
 		v.Signal = st.signal
-		if st.need > c.length {
-			*v = Value{Signal: st.signal, State: Missing}
+		if st.need > length {
+			v.Raw, v.Num, v.State, v.Index = 0, 0, Missing, 0
 			continue
 		}
-		var raw uint64
-		if st.from <= fromBE {
-			raw = c.words[st.from] >> (st.shift & 63) & st.mask
-		} else if st.extract != nil {
-			raw = st.extract.Raw(c.frame.Data[:])
+		word := words[st.from&1]
+		if st.from == fromElsewhere {
+			word = st.far.extract.Raw(c.frame.Data[:])
 		}
+		raw := word << (st.left & 63) >> (st.right & 63)
 		v.Raw = raw
 		switch st.op {
-		case opScaled:
+		case opPlain:
+			m := st.meanings[raw&uint64(st.mask)]
 			if raw >= st.coded {
-				if m := st.signal.lookUp(raw); m.state != Number {
-					v.Num, v.State, v.Index = 0, m.state, m.index
-					continue
-				}
+				m = st.signal.search(raw)
 			}
-			v.State, v.Index = Number, 0
-			v.Num = (int64(raw<<(st.extend&63))>>(st.extend&63))*st.mul + st.add
-		case opTable:
-			m := st.signal.dense[raw]
-			v.Num, v.State, v.Index = 0, m.state, m.index
+			num := (int64(raw^st.sign)-int64(st.sign))*st.mul + st.add
+			if m.state == Coded || m.state == Unknown {
+				num = 0
+			}
+			v.Num, v.State, v.Index = num, m.state, m.index
 		case opText:
 			v.Raw, v.Num, v.State, v.Index = 0, 0, Text, 0
 		case opOctets:
@@ -121,17 +120,19 @@ func (c *run) steps(program []step) {
 			st.signal.general(v)
 		}
 	}
+	return n
 }
 
-func (c *run) choose(st *step) {
+func (c *run) choose(st *step, values []Value, n int) int {
 	if st.need > c.length {
-		return
+		return n
 	}
-	program, listed := st.choose.program(st.choose.selector.Raw(c.frame.Data[:]))
-	if !listed && st.choose.unknown {
+	choose := st.far.choose
+	program, listed := choose.program(choose.selector.Raw(c.frame.Data[:]))
+	if !listed && choose.unknown {
 		c.record.UnknownSelection = true
 	}
-	c.steps(program)
+	return c.steps(program, values, n)
 }
 
 // general fills in a value of any kind from its raw bits.

@@ -1,6 +1,9 @@
 package decode
 
-import "busloom/frame"
+import (
+	"busloom/frame"
+	"busloom/schema"
+)
 
 // Tracker does what needs the order of frames: it follows counters and counts
 // what became of the records. It belongs to one goroutine.
@@ -14,6 +17,7 @@ type Tracker struct {
 type counterState struct {
 	seen    bool
 	raw     uint64
+	next    uint64 // what follows raw
 	repeats uint64
 }
 
@@ -105,6 +109,12 @@ func (t *Tracker) judge(r *Record, m *Message, n *MessageTotals) {
 	}
 	rule := m.rule
 	raw := r.CounterRaw
+	if state.seen && raw == state.next {
+		state.follow(raw, rule)
+		state.repeats = 0
+		r.Counter = Good
+		return
+	}
 	if raw < rule.Low || raw > rule.High || (raw-rule.Low)%rule.Step != 0 {
 		// What isn't a count can't be followed: the next one starts anew.
 		r.Counter = Bad
@@ -113,17 +123,16 @@ func (t *Tracker) judge(r *Record, m *Message, n *MessageTotals) {
 		return
 	}
 	if !state.seen {
-		*state = counterState{seen: true, raw: raw}
+		*state = counterState{seen: true}
+		state.follow(raw, rule)
 		r.Counter = First
 		return
 	}
 	states := (rule.High-rule.Low)/rule.Step + 1
 	delta := ((raw-rule.Low)/rule.Step + states - (state.raw-rule.Low)/rule.Step) % states
-	state.raw = raw
+	state.follow(raw, rule)
 	r.Counter = Good
 	switch {
-	case delta == 1:
-		state.repeats = 0
 	case delta == 0:
 		if state.repeats++; state.repeats > rule.AllowRepeated {
 			r.Counter = Repeated
@@ -137,6 +146,14 @@ func (t *Tracker) judge(r *Record, m *Message, n *MessageTotals) {
 			n.CounterLost++
 			n.LostSteps += int64(r.Steps)
 		}
+	}
+}
+
+// follow notes a count and what is to come after it.
+func (s *counterState) follow(raw uint64, rule *schema.CounterRule) {
+	s.raw, s.next = raw, raw+rule.Step
+	if raw >= rule.High {
+		s.next = rule.Low
 	}
 }
 

@@ -3,7 +3,7 @@ package schema
 import (
 	"fmt"
 	"math"
-	"sort"
+	"strings"
 
 	"busloom/codegen/ident"
 	"busloom/diag"
@@ -147,33 +147,26 @@ func frameTime(m *Message) float64 {
 
 // checkGenerated refuses names that become one identifier in generated code.
 func (c *compiler) checkGenerated() {
-	types := newIdentSet(c, "generated types")
+	types := newIdentSet(c)
 	for _, src := range c.order {
 		for _, decl := range src.tree.Decls {
 			switch d := decl.(type) {
 			case *syntax.MessageDecl:
 				if c.own(src, nsMessage, d.Name) != nil {
-					types.add(d.Name.Text, d.Name.Span)
+					types.add(identUse{kind: "the message ", name: d.Name.Text, span: d.Name.Span})
 				}
 			case *syntax.TableDecl:
 				if d.States && c.own(src, nsTable, d.Name) != nil {
-					types.add(d.Name.Text, d.Name.Span)
+					types.add(identUse{kind: "the states ", name: d.Name.Text, span: d.Name.Span})
 				}
 			}
 		}
 	}
 	tables := map[*table]bool{}
 	for _, d := range c.messages {
-		fields := newIdentSet(c, d.msg.Name)
+		fields := newIdentSet(c)
 		for _, m := range d.members {
-			span := m.tree.Name.Span
-			if m.via != nil {
-				span = m.via.span
-				if m.via.group != nil {
-					span = m.via.group.Name.Span
-				}
-			}
-			fields.add(m.path, span)
+			fields.add(identUse{name: m.path, span: m.tree.Name.Span, via: m.via})
 			if m.table != nil && !tables[m.table] {
 				tables[m.table] = true
 				c.checkWords(m.table)
@@ -183,10 +176,10 @@ func (c *compiler) checkGenerated() {
 }
 
 func (c *compiler) checkWords(t *table) {
-	words := newIdentSet(c, "one table")
+	words := newIdentSet(c)
 	for _, e := range t.entries {
 		if e.name != "" {
-			words.add(e.name, e.tree.Name.Span)
+			words.add(identUse{name: e.name, span: e.tree.Name.Span})
 		}
 	}
 }
@@ -194,41 +187,47 @@ func (c *compiler) checkWords(t *table) {
 // identSet holds the identifiers of one place of generated code.
 type identSet struct {
 	c     *compiler
-	where string
 	taken map[string]identUse
 }
 
 type identUse struct {
-	name string
-	span diag.Span
+	kind, name string // kind begins the description, "" where all are alike
+	span       diag.Span
+	via        *via // what brought a member of a shape
 }
 
-func newIdentSet(c *compiler, where string) *identSet {
-	return &identSet{c: c, where: where, taken: map[string]identUse{}}
+// spanBeside is where a use is told of in a clash with another one: a member
+// that a shape brings at its group, unless both come from one use of it.
+func (u identUse) spanBeside(other identUse) diag.Span {
+	if u.via == nil || u.via == other.via {
+		return u.span
+	}
+	if u.via.group != nil {
+		return u.via.group.Name.Span
+	}
+	return u.via.span
 }
 
-func (s *identSet) add(name string, span diag.Span) {
-	for _, id := range []string{ident.Go(name), ident.C(name)} {
+func newIdentSet(c *compiler) *identSet {
+	return &identSet{c: c, taken: map[string]identUse{}}
+}
+
+// add takes a name, and reports an earlier one that becomes the same.
+func (s *identSet) add(u identUse) {
+	for _, id := range []string{ident.Go(u.name), ident.C(u.name)} {
 		first, ok := s.taken[id]
 		if !ok {
-			s.taken[id] = identUse{name, span}
+			s.taken[id] = u
 			continue
 		}
-		if first.name == name {
-			continue
+		span := u.spanBeside(first)
+		if first.kind == u.kind && strings.EqualFold(first.name, u.name) {
+			s.c.report(diag.NameCaseClash, span, fmt.Sprintf("%s differs from %s in letter case only", u.name, first.name), "rename one of the two").
+				Also(first.spanBeside(u), "the other one")
+			return
 		}
-		s.c.report(diag.GeneratedClash, span, fmt.Sprintf("%s and %s both become %s in generated code", first.name, name, id), "rename one of the two").
-			Also(first.span, first.name+" is here")
+		s.c.report(diag.GeneratedClash, span, fmt.Sprintf("%s%s and %s%s both become %s in generated code", first.kind, first.name, u.kind, u.name, id), "rename one of the two").
+			Also(first.spanBeside(u), first.name+" is here")
 		return
 	}
-}
-
-// sortedNames is a map's keys in order.
-func sortedNames[V any](m map[string]V) []string {
-	out := make([]string, 0, len(m))
-	for name := range m {
-		out = append(out, name)
-	}
-	sort.Strings(out)
-	return out
 }

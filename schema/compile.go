@@ -21,6 +21,7 @@ func Compile(files Files, root string) (*Network, *diag.List) {
 		units:        unit.NewTable(),
 		unitCache:    map[string]unitResult{},
 		broken:       map[*syntax.Member]bool{},
+		misplaced:    map[*syntax.Member]bool{},
 		inlineTables: map[*syntax.TableClause]*table{},
 	}
 	c.readFiles(root)
@@ -80,6 +81,7 @@ type compiler struct {
 	inlineTables map[*syntax.TableClause]*table
 	messages     []*draft
 	broken       map[*syntax.Member]bool // members of shapes with a mistake in them
+	misplaced    map[*syntax.Member]bool // those of them without a legal place
 	searches     int                     // for similar names, each of which costs
 }
 

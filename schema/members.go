@@ -30,7 +30,9 @@ func (c *compiler) checkMember(d *draft, m *member) {
 	fail := func() { m.broken = true }
 	var placed bool
 	s.Kind = kindOf(t)
-	s.Place, placed = c.place(t.Place, scope{shift: m.shift, shape: m.shapeMark(), size: -1}, d, m.path, s)
+	if !c.misplaced[t] {
+		s.Place, placed = c.place(t.Place, scope{shift: m.shift, shape: m.shapeMark(), size: -1}, d, m.path, s)
+	}
 	if !placed {
 		m.broken = true
 	} else {
@@ -167,12 +169,11 @@ func (c *compiler) place(t syntax.Place, s scope, d *draft, path string, sig *Si
 		return out, size < mostSize
 	}
 	if size >= 0 && out.LastByte() >= size {
-		subject := "these bits are"
+		subject := "this run"
 		if path != "" {
-			subject = path + " is"
+			subject = path
 		}
-		remedy := "move it, or give " + d.what + " more bytes"
-		c.report(diag.PastEnd, t.Span, fmt.Sprintf("%s partly past the end: byte %d of %s", subject, out.LastByte(), describeBytes(size)), remedy).
+		c.report(diag.PastEnd, t.Span, fmt.Sprintf("%s reaches byte %d, but %s has %s", subject, out.LastByte(), d.what, describeBytes(size)), "move it, or make room for it").
 			Also(d.head, d.what)
 		return out, false
 	}
@@ -277,36 +278,29 @@ func (c *compiler) fillByte(n *syntax.Number) (*byte, bool) {
 	return &b, true
 }
 
-// checkClauses refuses clauses that mean nothing for the kind.
+// checkClauses refuses clauses that mean nothing for states, and initial
+// values of what has none. The parser refuses what a kind's word forbids.
 func (c *compiler) checkClauses(m *member) bool {
 	s, t := m.sig, m.tree
-	number := s.Kind.isNumber() && s.Fixed == nil && (t.Kind == nil || t.Kind.Word != "always")
-	phrase := kindPhrase(s.Kind)
-	if !number && s.Kind == Unsigned {
-		phrase = "always the same value"
-	}
 	refuse := func(span diag.Span, clause string) bool {
+		phrase := kindPhrase(s.Kind)
+		if t.Kind != nil && t.Kind.Word == "always" {
+			phrase = "always the same value"
+		}
 		c.report(diag.ClauseNotAllowed, span, fmt.Sprintf("%s is %s, for which %s means nothing", s.Name, phrase, clause), "remove it, or change the kind")
 		return false
 	}
-	if t.Table != nil && t.Table.States && t.Kind != nil && t.Kind.Word != "signed" {
-		return refuse(t.Kind.Span, t.Kind.Word)
-	}
-	if !number {
-		switch {
-		case t.Expr != nil:
-			return refuse(t.Expr.ExprSpan(), "a formula")
-		case t.In != nil:
-			return refuse(t.In.Span, "a unit")
-		case t.Within != nil:
-			return refuse(t.Within.Span, "a range")
-		case t.Tolerance != nil:
-			return refuse(t.Tolerance.Span, "a tolerance")
-		case t.Table != nil && !t.Table.States && s.Kind != Counter:
-			return refuse(t.Table.Span, "a table of codes")
-		case t.Initial != nil && s.Kind != States && s.Kind != Flag && s.Kind != Counter:
-			return refuse(t.Initial.Span, "an initial value")
-		}
+	switch {
+	case s.Kind == States && t.Expr != nil:
+		return refuse(t.Expr.ExprSpan(), "a formula")
+	case s.Kind == States && t.In != nil:
+		return refuse(t.In.Span, "a unit")
+	case s.Kind == States && t.Within != nil:
+		return refuse(t.Within.Span, "a range")
+	case s.Kind == States && t.Tolerance != nil:
+		return refuse(t.Tolerance.Span, "a tolerance")
+	case t.Initial != nil && (s.Kind.isText() || s.Kind == Checksum || (t.Kind != nil && t.Kind.Word == "always")):
+		return refuse(t.Initial.Span, "an initial value")
 	}
 	return true
 }

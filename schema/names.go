@@ -303,11 +303,22 @@ func pathText(p syntax.Path) string {
 // noteUnused tells what nothing refers to. It runs on sound networks only: a
 // mistake may be the reference that is missing.
 func (c *compiler) noteUnused() {
+	needed := map[*source]bool{c.root: true}
+	for _, src := range c.order {
+		for _, u := range src.uses {
+			if u.needed || u.target.declares {
+				needed[u.target] = true
+			}
+		}
+	}
 	for _, src := range c.order {
 		for _, u := range src.uses {
 			if !u.needed && !u.target.declares {
 				c.report(diag.UnusedImport, u.tree.Path.Span, fmt.Sprintf("nothing of %q is used in this file", u.tree.Path.Value), "remove the line, if nothing is to come")
 			}
+		}
+		if !needed[src] {
+			continue // told of the whole file
 		}
 		for _, d := range src.tree.Decls {
 			sym := symbolOf(src, d)

@@ -93,13 +93,6 @@ func (c *compiler) checkCounter(m *member) bool {
 		return false
 	}
 	s.Counter = rule
-	for _, code := range s.Codes {
-		if code.Raw.Low <= rule.High && code.Raw.High >= rule.Low {
-			c.report(diag.RangeCutByCodes, m.codesSpan(), fmt.Sprintf("the code %s (raw %s) is a value that the counter %s counts through", code.label(), describeRange(code.Raw), s.Name), "end the counter below the codes").
-				Also(span, "the counter's range")
-			return false
-		}
-	}
 	if i := m.tree.Initial; i != nil {
 		if i.Name != nil {
 			return c.initialName(m, i.Name)

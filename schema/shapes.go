@@ -111,6 +111,9 @@ func (c *compiler) checkShape(s *shape) {
 		if m.broken {
 			c.broken[m.tree] = true
 		}
+		if !m.placed {
+			c.misplaced[m.tree] = true
+		}
 	}
 	s.broken = d.full
 }

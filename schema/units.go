@@ -61,12 +61,26 @@ func (c *compiler) defineUnits() {
 		}
 		left = still
 	}
+	told := map[string]bool{} // units of rings that are reported
 	for _, p := range left {
+		if told[p.d.Name.Text] {
+			continue
+		}
 		var unknown *unit.UnknownUnit
 		if err := c.lookupUnit(p.d.Value.Unit.Text).err; errors.As(err, &unknown) {
 			if other := c.symbols[symbolKey{nsUnit, unknown.Text}]; other != nil {
 				c.report(diag.BadUnitDefinition, p.d.Value.Unit.Span, fmt.Sprintf("the unit %s is defined by %s, which isn't defined itself", p.d.Name.Text, unknown.Text),
-					"end the ring: define one of the units by a known one, or by none").Also(other.name.Span, unknown.Text+" is declared here")
+					"define one of the units by a known one, or by none").Also(other.name.Span, unknown.Text+" is declared here")
+				for next := unknown; next != nil && !told[next.Text]; {
+					told[next.Text] = true
+					d, isUnit := c.symbols[symbolKey{nsUnit, next.Text}].decl.(*syntax.UnitDecl)
+					next = nil
+					if isUnit && d.Value != nil && d.Value.Unit != nil {
+						if err := c.lookupUnit(d.Value.Unit.Text).err; !errors.As(err, &next) || c.symbols[symbolKey{nsUnit, next.Text}] == nil {
+							next = nil
+						}
+					}
+				}
 				continue
 			}
 		}

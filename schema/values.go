@@ -657,4 +657,3 @@ func (c *compiler) unknownWord(code diag.Code, m *member, name syntax.Name) {
 		d.Also(m.tree.Table.Span, "its table")
 	}
 }
-

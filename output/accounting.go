@@ -1,0 +1,62 @@
+package output
+
+import (
+	"fmt"
+	"sort"
+	"strings"
+
+	"busloom/decode"
+)
+
+// Accounting is the text that says what became of every record: the classes,
+// which add up to what was read, and what was noticed about the decoded ones.
+func Accounting(t *decode.Totals, skipped int64) string {
+	var b strings.Builder
+	fmt.Fprintf(&b, "%d records read = %d decoded", t.Sum()+skipped, t.Classes[decode.Decoded])
+	for _, c := range []decode.Class{decode.Undescribed, decode.RemoteFrame, decode.ErrorFrame, decode.Unmapped} {
+		if n := t.Classes[c]; n > 0 || c == decode.Undescribed {
+			fmt.Fprintf(&b, " + %d %s", n, plural(n, className(c)))
+		}
+	}
+	fmt.Fprintf(&b, " + %d malformed", t.Malformed)
+	if skipped > 0 {
+		fmt.Fprintf(&b, " + %d outside of the time window", skipped)
+	}
+	b.WriteByte('\n')
+	if t.Short+t.Long > 0 {
+		fmt.Fprintf(&b, "of the decoded: %d shorter and %d longer than described\n", t.Short, t.Long)
+	}
+	var sum decode.MessageTotals
+	for i := range t.Messages {
+		m := &t.Messages[i]
+		sum.ChecksumBad += m.ChecksumBad
+		sum.CounterBad += m.CounterBad
+		sum.CounterRepeated += m.CounterRepeated
+		sum.CounterLost += m.CounterLost
+		sum.LostSteps += m.LostSteps
+		sum.UnknownSelection += m.UnknownSelection
+	}
+	if t.ProtectionFailures() > 0 {
+		fmt.Fprintf(&b, "protection failures: %d wrong checksums, %d counters out of range, %d repeated, %d gaps of %d lost steps\n",
+			sum.ChecksumBad, sum.CounterBad, sum.CounterRepeated, sum.CounterLost, sum.LostSteps)
+	}
+	if sum.UnknownSelection > 0 {
+		fmt.Fprintf(&b, "unknown selector values: %d frames\n", sum.UnknownSelection)
+	}
+	if len(t.Unmapped) > 0 {
+		var names []string
+		for name, n := range t.Unmapped {
+			names = append(names, fmt.Sprintf("%s (%d)", name, n))
+		}
+		sort.Strings(names)
+		fmt.Fprintf(&b, "no bus is tied to %s: use --map INTERFACE=BUS\n", strings.Join(names, ", "))
+	}
+	return b.String()
+}
+
+func plural(n int64, word string) string {
+	if word == "error frame" && n != 1 {
+		return "error frames"
+	}
+	return word
+}
