@@ -99,9 +99,8 @@ func run(busloom string, lines int64, rounds int) error {
 	decode := func(format string) []string {
 		args := []string{busloom, "decode", "--format", format}
 		for iface, bus := range interfaces {
-			args = append(args, "--map", iface+"="+bus)
+			args = append(args, "--map="+iface+"="+bus)
 		}
-		sort.Strings(args[4:])
 		return append(args, database, path)
 	}
 	subjects := []*subject{

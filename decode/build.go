@@ -32,25 +32,25 @@ const (
 	fromElsewhere               // further behind, or bit by bit
 )
 
-// step is one instruction of a message's program: take a value, or select.
+// step is one instruction of a message's program: take a value, or select. It
+// fills one cache line.
 type step struct {
-	signal *Signal
-	// opPlain: meanings[raw & mask] says what the value is; a wide number has
-	// only one meaning, and codes from coded on.
-	meanings []meaning
-	coded    uint64
+	signal   *Signal
+	coded    uint64 // opPlain: codes begin here; below it are plain values only
 	sign     uint64 // the sign bit of a two's complement value, else 0
 	mul, add int64
+	// far is what is needed less often.
+	far *farStep
 
+	// opPlain: Plan.meanings[table + raw&mask] says what a value is. A number
+	// has mask 0 and the one meaning of all numbers.
+	table uint32
 	mask  uint8
 	op    op
 	from  source
 	left  uint8 // the value is (word << left) >> right
 	right uint8
 	need  uint8 // payload bytes
-
-	// far is what is needed less often.
-	far *farStep
 }
 
 // farStep is the rest of a step.
@@ -164,7 +164,7 @@ func firstSignal(s *schema.Select, index map[*schema.Signal]int) int {
 
 func (b *builder) selectStep(s *schema.Select, index map[*schema.Signal]int) (step, error) {
 	c := &selection{selector: bits.Compile(s.Selector.Place), unknown: s.Otherwise == schema.OtherwiseUnknown}
-	if s.Selector.Width <= denseWidth {
+	if s.Selector.Width <= tableWidth {
 		c.dense = make([]int16, 1<<s.Selector.Width)
 	}
 	for i := range s.Branches {
@@ -224,6 +224,15 @@ func (b *builder) signalStep(model *schema.Signal) (step, error) {
 	}
 	b.register(s)
 	st := step{signal: s, need: uint8(model.Place.LastByte() + 1)}
+	if s.toEnd {
+		s.rest = model.Place.LastByte() + 1
+		if s.rest > b.message.size {
+			// It begins where the fixed bytes end, so it may be empty.
+			s.place.Runs = s.place.Runs[:len(s.place.Runs)-1]
+			s.rest--
+			st.need = uint8(s.rest)
+		}
+	}
 	switch model.Kind {
 	case schema.TextASCII, schema.TextUTF8:
 		st.op = opText
@@ -245,8 +254,7 @@ func (b *builder) signalStep(model *schema.Signal) (step, error) {
 		b.convert(s)
 	}
 	st.place(model.Place)
-	s.fillDense()
-	st.setOp(s)
+	b.setOp(&st, s)
 	return st, nil
 }
 
@@ -290,44 +298,32 @@ func (st *step) place(p bits.Place) {
 	}
 }
 
-// fillDense makes the table of a narrow signal's meanings.
-func (s *Signal) fillDense() {
-	if s.width > denseWidth || s.kind == schema.Float {
-		return
-	}
-	table := make([]meaning, 1<<s.width)
-	for raw := range table {
-		table[raw] = s.search(uint64(raw))
-	}
-	s.dense = table
-}
-
-// number is the meaning of a wide signal's values below its first code.
-var number = []meaning{{state: Number}}
-
 // setOp finds the cheapest instruction for a signal.
-func (st *step) setOp(s *Signal) {
+func (b *builder) setOp(st *step, s *Signal) {
 	st.op = opGeneral
 	st.coded = ^uint64(0)
-	plain := s.Scaled && s.curve == nil && s.round.r == 1
+	if len(s.codes) > 0 {
+		st.coded = s.codes[0].low
+	}
 	switch s.kind {
+	case schema.Flag, schema.States:
+		if s.width <= tableWidth {
+			st.op, st.coded = opPlain, ^uint64(0)
+			st.mask = uint8(1<<s.width - 1)
+			st.table = uint32(len(b.plan.meanings))
+			for raw := range uint64(1) << s.width {
+				b.plan.meanings = append(b.plan.meanings, s.search(raw))
+			}
+		}
+		return
 	case schema.Unsigned, schema.Counter, schema.Checksum:
 	case schema.Signed:
 		st.sign = 1 << (s.width - 1)
 	default:
-		plain = false
+		return
 	}
-	if plain {
-		st.mul, st.add = s.round.p, s.round.q
-	}
-	switch {
-	case s.dense != nil && (plain || !s.IsNumber()):
-		st.op, st.meanings, st.mask = opPlain, s.dense, uint8(len(s.dense)-1)
-	case plain && s.fixed == nil:
-		st.op, st.meanings = opPlain, number
-		if len(s.codes) > 0 {
-			st.coded = s.codes[0].low
-		}
+	if s.Scaled && s.curve == nil && s.round.r == 1 && s.fixed == nil {
+		st.op, st.mul, st.add = opPlain, s.round.p, s.round.q
 	}
 }
 

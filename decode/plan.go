@@ -37,6 +37,9 @@ type Plan struct {
 	busOf  []string  // by interface number
 	names  []string  // of the interfaces
 	widest int       // most values that a frame can have
+	// meanings has the tables of signals with words; its first entry is the
+	// meaning of all numbers.
+	meanings []meaning
 }
 
 // Message is a message of the plan.
@@ -61,7 +64,7 @@ type Message struct {
 // NewPlan builds a plan. Its errors name what the options have wrong, with the
 // nearest known name.
 func NewPlan(network *schema.Network, opts Options) (*Plan, error) {
-	p := &Plan{Network: network, opts: opts, byBus: map[string]*lookup{}}
+	p := &Plan{Network: network, opts: opts, byBus: map[string]*lookup{}, meanings: []meaning{mean(Number, 0)}}
 	if err := p.checkBuses(); err != nil {
 		return nil, err
 	}

@@ -51,9 +51,8 @@ func (p *Plan) Decode(f *frame.Frame, r *Record) {
 	if cap(r.Values) < p.widest {
 		r.Values = make([]Value, 0, p.widest)
 	}
-	c := run{frame: f, record: r, length: uint8(length)}
-	c.words[fromLE] = binary.LittleEndian.Uint64(f.Data[:8])
-	c.words[fromBE] = mathbits.ReverseBytes64(c.words[fromLE])
+	word := binary.LittleEndian.Uint64(f.Data[:8])
+	c := run{frame: f, record: r, meanings: p.meanings, le: word, be: mathbits.ReverseBytes64(word), length: uint8(length)}
 	values := r.Values[:cap(r.Values)]
 	n := c.steps(m.program, values, 0)
 	for _, s := range m.ids {
@@ -72,16 +71,18 @@ func (p *Plan) Decode(f *frame.Frame, r *Record) {
 
 // run is what the steps of one frame need.
 type run struct {
-	frame  *frame.Frame
-	record *Record
-	words  [2]uint64 // the first 8 bytes, by fromLE and fromBE
-	length uint8
+	frame    *frame.Frame
+	record   *Record
+	meanings []meaning
+	le, be   uint64 // the first 8 bytes
+	length   uint8
 }
 
 // steps runs a program; the values go into values from n on. It returns the
 // number of values then.
 func (c *run) steps(program []step, values []Value, n int) int {
-	words, length := c.words, c.length
+	words := [2]uint64{c.le, c.be}
+	meanings, length := c.meanings, c.length
 	for i := range program {
 		st := &program[i]
 		if st.op == opSelect {
@@ -103,15 +104,15 @@ func (c *run) steps(program []step, values []Value, n int) int {
 		v.Raw = raw
 		switch st.op {
 		case opPlain:
-			m := st.meanings[raw&uint64(st.mask)]
+			m := meanings[st.table+uint32(uint8(raw)&st.mask)]
 			if raw >= st.coded {
 				m = st.signal.search(raw)
 			}
 			num := (int64(raw^st.sign)-int64(st.sign))*st.mul + st.add
-			if m.state == Coded || m.state == Unknown {
+			if m.state() != Number {
 				num = 0
 			}
-			v.Num, v.State, v.Index = num, m.state, m.index
+			v.Num, v.State, v.Index = num, m.state(), m.index()
 		case opText:
 			v.Raw, v.Num, v.State, v.Index = 0, 0, Text, 0
 		case opOctets:
@@ -137,9 +138,9 @@ func (c *run) choose(st *step, values []Value, n int) int {
 
 // general fills in a value of any kind from its raw bits.
 func (s *Signal) general(v *Value) {
-	m := s.lookUp(v.Raw)
-	v.Num, v.State, v.Index = 0, m.state, m.index
-	if m.state != Number {
+	m := s.search(v.Raw)
+	v.Num, v.State, v.Index = 0, m.state(), m.index()
+	if m.state() != Number {
 		return
 	}
 	if s.kind == schema.Float {

@@ -26,15 +26,14 @@ type Signal struct {
 	Decimals int
 	Exact    bool
 
-	kind  schema.Kind
-	width int
-	line  *line  // of signals that aren't Scaled
-	codes []code // sorted
-	// dense has what each raw value of a narrow signal is.
-	dense   []meaning
+	kind    schema.Kind
+	width   int
+	line    *line  // of signals that aren't Scaled
+	codes   []code // sorted
 	states  []schema.State
 	place   bits.Place
 	toEnd   bool
+	rest    int    // toEnd: the first byte behind place
 	fill    []byte // the fill byte of text, if any
 	fixed   *uint64
 	idShift int // of an open field
@@ -54,14 +53,18 @@ type line struct {
 
 type code struct{ low, high uint64 }
 
-// meaning is what one raw value is.
-type meaning struct {
-	state State
-	index uint16
-}
+// meaning is what one raw value is, packed: the state in the low four bits,
+// the index above them.
+type meaning uint16
 
-// denseWidth is the widest signal whose meanings are kept in a table.
-const denseWidth = 8
+func mean(s State, index int) meaning { return meaning(s) | meaning(index)<<4 }
+
+func (m meaning) state() State  { return State(m & 15) }
+func (m meaning) index() uint16 { return uint16(m >> 4) }
+
+// tableWidth is the widest signal with words whose meanings are kept in a
+// table.
+const tableWidth = 8
 
 // Name is Message.path.
 func (s *Signal) Name() string { return s.Message.Model.Name + "." + s.Path }
@@ -75,14 +78,7 @@ func (s *Signal) IsNumber() bool {
 	return true
 }
 
-// lookUp finds what a raw value is: a code, a state, unknown, or a number.
-func (s *Signal) lookUp(raw uint64) meaning {
-	if s.dense != nil {
-		return s.dense[raw]
-	}
-	return s.search(raw)
-}
-
+// search finds what a raw value is: a code, a state, unknown, or a number.
 func (s *Signal) search(raw uint64) meaning {
 	if i, ok := slices.BinarySearchFunc(s.codes, raw, func(c code, raw uint64) int {
 		switch {
@@ -93,23 +89,23 @@ func (s *Signal) search(raw uint64) meaning {
 		}
 		return 0
 	}); ok {
-		return meaning{Coded, uint16(i)}
+		return mean(Coded, i)
 	}
 	if s.fixed != nil && raw != *s.fixed {
-		return meaning{state: Unknown}
+		return mean(Unknown, 0)
 	}
 	switch s.kind {
 	case schema.Flag:
-		return meaning{Word, uint16(raw)}
+		return mean(Word, int(raw))
 	case schema.States:
 		for i, st := range s.states {
 			if raw >= st.Raw.Low && raw <= st.Raw.High {
-				return meaning{Word, uint16(i)}
+				return mean(Word, i)
 			}
 		}
-		return meaning{state: Unknown}
+		return mean(Unknown, 0)
 	}
-	return meaning{state: Number}
+	return mean(Number, 0)
 }
 
 // Text is the word of a coded value, of a state or of a flag; "" for any other.

@@ -68,7 +68,7 @@ func (s *Signal) AppendString(dst []byte, f *frame.Frame) []byte {
 func (s *Signal) octets(dst []byte, f *frame.Frame) []byte {
 	dst = bits.AppendBytes(dst, f.Data[:], s.place)
 	if s.toEnd {
-		dst = append(dst, f.Data[min(s.place.LastByte()+1, int(f.Len)):f.Len]...)
+		dst = append(dst, f.Data[min(s.rest, int(f.Len)):f.Len]...)
 	}
 	return dst
 }

@@ -545,7 +545,11 @@ func (l *loader) signal(d *dbSignal, m *Message) (s *Signal, err error) {
 	if s.Kind, ok = word(kindWords, d.Kind); !ok {
 		return nil, fmt.Errorf("the kind is %q", d.Kind)
 	}
-	if s.Place, err = loadPlace(d.Place, m.Size); err != nil {
+	size := m.Size
+	if s.ToEnd && m.AtLeast {
+		size++ // what goes on to the end may begin where the fixed bytes end
+	}
+	if s.Place, err = loadPlace(d.Place, size); err != nil {
 		return nil, err
 	}
 	s.Width = s.Place.Width()
