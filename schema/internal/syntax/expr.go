@@ -7,12 +7,13 @@ import (
 	"github.com/alecthomas/participle/v2/lexer"
 )
 
-// maxDepth bounds nesting of parentheses and of selections, so that no text
-// can exhaust the stack.
-const maxDepth = 64
+// Bounds of what a text may nest, so that none can exhaust the stack.
+const (
+	maxDepth      = 64  // parentheses of a formula, braces of a file
+	maxOperations = 256 // operators of one formula
+)
 
-// gExpr is a formula as the hand-written parser leaves it: a tree whose tokens
-// are whole. The library calls Parse for it.
+// gExpr is a formula, read by hand: a tree whose tokens are whole.
 type gExpr struct {
 	op          token // + - * / for an operation; - alone with right for a negation
 	left, right *gExpr
@@ -25,159 +26,130 @@ type gExpr struct {
 }
 
 // Parse implements participle.Parseable: sums of products of atoms.
-func (e *gExpr) Parse(lex *lexer.PeekingLexer) error {
-	if k := lex.Peek(); !beginsAtom(k) {
+func (g *gExpr) Parse(lex *lexer.PeekingLexer) error {
+	if !beginsAtom(lex) {
 		return participle.NextMatch
 	}
-	got, err := parseSum(lex, 0)
+	r := &exprReader{lex: lex}
+	got, err := r.sum(0)
 	if err != nil {
 		return err
 	}
-	*e = *got
+	*g = *got
 	return nil
 }
 
-func beginsAtom(t *token) bool {
-	return t.Type == tokNumber || t.Type == tokWord || t.Value == "raw" && t.Type == tokKeyword ||
-		t.Type == tokPunct && (t.Value == "(" || t.Value == "-")
-}
-
-func isPunct(t *token, values ...string) bool {
-	if t.Type != tokPunct {
-		return false
-	}
-	for _, v := range values {
-		if t.Value == v {
-			return true
-		}
-	}
-	return false
-}
-
-func parseSum(lex *lexer.PeekingLexer, depth int) (*gExpr, error) {
-	return parseLevel(lex, depth, parseProduct, "+", "-")
-}
-
-func parseProduct(lex *lexer.PeekingLexer, depth int) (*gExpr, error) {
-	return parseLevel(lex, depth, parseSigned, "*", "/")
-}
-
-func parseLevel(lex *lexer.PeekingLexer, depth int, below func(*lexer.PeekingLexer, int) (*gExpr, error), ops ...string) (*gExpr, error) {
-	left, err := below(lex, depth)
-	if err != nil {
-		return nil, err
-	}
-	for isPunct(lex.Peek(), ops...) {
-		op := *lex.Next()
-		if next := lex.Peek(); op.Value == "/" && next.Type != tokNumber && !isPunct(next, "(") && glued(&op, next) {
-			return nil, &gluedError{op}
-		}
-		right, err := below(lex, depth)
-		if err != nil {
-			return nil, err
-		}
-		left = &gExpr{op: op, left: left, right: right}
-	}
-	return left, nil
-}
-
-func parseSigned(lex *lexer.PeekingLexer, depth int) (*gExpr, error) {
-	if isPunct(lex.Peek(), "-") {
-		op := *lex.Next()
-		if depth >= maxDepth {
-			return nil, tooDeep(&op)
-		}
-		operand, err := parseSigned(lex, depth+1)
-		if err != nil {
-			return nil, err
-		}
-		return &gExpr{op: op, right: operand}, nil
-	}
-	return parseAtom(lex, depth)
-}
-
-func tooDeep(at *token) error {
-	return &deepError{at: *at}
-}
-
-// deepError is nesting beyond maxDepth.
-type deepError struct{ at token }
-
-func (e *deepError) Error() string            { return e.Message() }
-func (e *deepError) Message() string          { return fmt.Sprintf("nested more than %d deep", maxDepth) }
-func (e *deepError) Position() lexer.Position { return e.at.Pos }
-
-func parseAtom(lex *lexer.PeekingLexer, depth int) (*gExpr, error) {
+func beginsAtom(lex *lexer.PeekingLexer) bool {
 	t := lex.Peek()
+	return t.Type == tokNumber || t.Type == tokKeyword && t.Value == "raw" || isPunct(t, "(", "-") || beginsStep(lex)
+}
+
+type exprReader struct {
+	lex        *lexer.PeekingLexer
+	operations int
+}
+
+func (r *exprReader) sum(depth int) (*gExpr, error) {
+	left, err := r.product(depth)
+	for err == nil && isPunct(r.lex.Peek(), "+", "-") {
+		left, err = r.operation(left, depth, r.product)
+	}
+	return left, err
+}
+
+func (r *exprReader) product(depth int) (*gExpr, error) {
+	left, err := r.signed(depth)
+	for err == nil && isPunct(r.lex.Peek(), "*", "/") {
+		left, err = r.operation(left, depth, r.signed)
+	}
+	return left, err
+}
+
+func (r *exprReader) operation(left *gExpr, depth int, below func(int) (*gExpr, error)) (*gExpr, error) {
+	op := *r.lex.Next()
+	if r.operations++; r.operations > maxOperations {
+		return nil, &deepError{op, fmt.Sprintf("this formula has more than %d operators", maxOperations)}
+	}
+	if next := r.lex.Peek(); op.Value == "/" && next.Type != tokNumber && !isPunct(next, "(") && glued(&op, next) {
+		return nil, &gluedError{op}
+	}
+	right, err := below(depth)
+	return &gExpr{op: op, left: left, right: right}, err
+}
+
+func (r *exprReader) signed(depth int) (*gExpr, error) {
+	if !isPunct(r.lex.Peek(), "-") {
+		return r.atom(depth)
+	}
+	op := *r.lex.Next()
+	operand, err := r.atom(depth)
+	return &gExpr{op: op, right: operand}, err
+}
+
+func (r *exprReader) atom(depth int) (*gExpr, error) {
+	t := r.lex.Peek()
 	switch {
 	case t.Type == tokNumber:
-		e := &gExpr{number: *lex.Next()}
-		if lex.Peek().Type == tokUnit {
-			e.unit = *lex.Next()
+		e := &gExpr{number: *r.lex.Next()}
+		if r.lex.Peek().Type == tokUnit {
+			e.unit = *r.lex.Next()
 		}
 		return e, nil
 	case t.Type == tokKeyword && t.Value == "raw":
-		return &gExpr{raw: *lex.Next()}, nil
+		return &gExpr{raw: *r.lex.Next()}, nil
 	case isPunct(t, "("):
-		open := *lex.Next()
-		inner, end, err := parseInner(lex, depth, &open)
+		open := *r.lex.Next()
+		inner, end, err := r.inner(depth, &open)
 		if err != nil {
 			return nil, err
 		}
-		wrapped := *inner
-		wrapped.open, wrapped.close = open, end
-		return &wrapped, nil
-	case t.Type == tokWord:
-		path := &gPath{Steps: []*gStep{{Name: *lex.Next()}}}
-		for isPunct(lex.Peek(), ".") {
-			lex.Next()
-			if lex.Peek().Type != tokWord {
-				return nil, wrong(lex.Peek(), "a name")
-			}
-			path.Steps = append(path.Steps, &gStep{Name: *lex.Next()})
+		if inner.path != nil && inner.operand != nil {
+			// The node has parentheses of its own: those around it go.
+			return inner, nil
 		}
-		e := &gExpr{path: path}
-		if isPunct(lex.Peek(), "(") {
-			open := *lex.Next()
-			inner, end, err := parseInner(lex, depth, &open)
-			if err != nil {
-				return nil, err
-			}
-			e.operand, e.open, e.close = inner, open, end
+		inner.open, inner.close = open, end
+		return inner, nil
+	case beginsStep(r.lex):
+		e := &gExpr{path: &gPath{}}
+		if err := e.path.Parse(r.lex); err != nil {
+			return nil, err
 		}
-		return e, nil
+		if !isPunct(r.lex.Peek(), "(") {
+			return e, nil
+		}
+		open := *r.lex.Next()
+		inner, end, err := r.inner(depth, &open)
+		e.operand, e.open, e.close = inner, open, end
+		return e, err
 	}
 	return nil, wrong(t, "a number, raw, a name or a parenthesis")
 }
 
-func parseInner(lex *lexer.PeekingLexer, depth int, open *token) (*gExpr, token, error) {
+func (r *exprReader) inner(depth int, open *token) (*gExpr, token, error) {
 	if depth >= maxDepth {
-		return nil, token{}, tooDeep(open)
+		return nil, token{}, &deepError{*open, fmt.Sprintf("parentheses are nested more than %d deep", maxDepth)}
 	}
-	inner, err := parseSum(lex, depth+1)
+	inner, err := r.sum(depth + 1)
 	if err != nil {
 		return nil, token{}, err
 	}
-	if !isPunct(lex.Peek(), ")") {
-		return nil, token{}, wrong(lex.Peek(), "an operator or the closing parenthesis")
+	if !isPunct(r.lex.Peek(), ")") {
+		return nil, token{}, wrong(r.lex.Peek(), "an operator or the closing parenthesis")
 	}
-	return inner, *lex.Next(), nil
+	return inner, *r.lex.Next(), nil
 }
 
-// expectedError is an error of the hand-written part that knows what was
-// expected in plain words.
-type expectedError struct {
-	at   token
-	want string
+// deepError is more nesting, or more operators, than the language allows.
+type deepError struct {
+	at      token
+	problem string
 }
 
-func (e *expectedError) Error() string            { return e.Message() }
-func (e *expectedError) Message() string          { return "expected " + e.want }
-func (e *expectedError) Position() lexer.Position { return e.at.Pos }
+func (e *deepError) Error() string            { return e.Message() }
+func (e *deepError) Message() string          { return e.problem }
+func (e *deepError) Position() lexer.Position { return e.at.Pos }
 
-func wrong(at *token, want string) error { return &expectedError{*at, want} }
-
-// gluedError is raw/teeth: neither a unit nor, to the eye, a division.
+// gluedError is raw/teeth: no unit and, to the eye, no division.
 type gluedError struct{ at token }
 
 func (e *gluedError) Error() string            { return e.Message() }

@@ -214,7 +214,7 @@ func formula(e Expr, around int) string {
 		text = formula(e.Left, binds) + " " + string(e.Op) + " " + formula(e.Right, binds+1)
 	case *Negation:
 		binds = bindSign
-		text = "-" + formula(e.Operand, bindSign)
+		text = "-" + formula(e.Operand, bindSign+1)
 	case *Literal:
 		text = e.Number.Raw
 		if e.Unit != nil {

@@ -5,115 +5,100 @@ import (
 	"github.com/alecthomas/participle/v2/lexer"
 )
 
-// The grammar of the pieces that split.go cuts, for the parser library. Tokens
-// are kept whole, so that every word has its span. These types don't leave
-// this package: lower.go makes the tree of them.
+// The grammar for the parser library. Tokens are kept whole, so that every
+// word has its span. Words of the language are written with their token type:
+// the same word as a member's name is of another type. The productions that
+// occur most are read by hand (leaves.go, expr.go). None of these types leaves
+// the package: lower.go makes the tree of them.
 
 type token = lexer.Token
 
-type gTexts struct {
-	Strings []token `parser:"@String*"`
-}
-
-type gQuantity struct {
-	Minus  token `parser:"@\"-\"?"`
-	Number token `parser:"@Number"`
-	Unit   token `parser:"@Unit?"`
-}
-
-type gStep struct {
-	Name token `parser:"@Word"`
-	Key  token `parser:"( \"[\" @(Word | Number) \"]\" )?"`
-}
-
-type gPath struct {
-	Steps []*gStep `parser:"@@ ( \".\" @@ )*"`
-}
-
 type gVersion struct {
-	Word   token `parser:"@\"busloom\""`
-	Number token `parser:"@Number"`
+	Number token `parser:"\"busloom\":Word @Number"`
 }
 
 type gNetwork struct {
-	Name  token   `parser:"\"network\" @Word"`
-	Texts []token `parser:"@String*"`
+	Name token  `parser:"\"network\":Word @Word"`
+	Text gTexts `parser:"@@"`
 }
 
 type gUse struct {
-	Path token `parser:"\"use\" @String"`
-	As   token `parser:"( \"as\" @Word )?"`
+	Path token `parser:"\"use\":Word @String"`
+	As   token `parser:"( \"as\":Word @Word )?"`
+}
+
+type gDecl struct {
+	Bus     *gBus     `parser:"(   @@"`
+	ECU     *gECU     `parser:"  | @@"`
+	Unit    *gUnit    `parser:"  | @@"`
+	Const   *gConst   `parser:"  | @@"`
+	Table   *gTable   `parser:"  | @@"`
+	Curve   *gCurve   `parser:"  | @@"`
+	IDForm  *gIDForm  `parser:"  | @@"`
+	CRC     *gCRC     `parser:"  | @@"`
+	Shape   *gShape   `parser:"  | @@"`
+	Message *gMessage `parser:"  | @@ )"`
 }
 
 type gBus struct {
-	Name  token      `parser:"\"bus\" @Word"`
-	Rate  gQuantity  `parser:"@@"`
-	FD    *gQuantity `parser:"( \"fd\" @@ )?"`
-	Texts []token    `parser:"@String*"`
+	Name token      `parser:"\"bus\":Word @Word"`
+	Rate gQuantity  `parser:"@@"`
+	FD   *gQuantity `parser:"( \"fd\":Word @@ )?"`
+	Text gTexts     `parser:"@@"`
 }
 
 type gECU struct {
-	Name   token   `parser:"\"ecu\" @Word"`
-	Buses  []token `parser:"\"on\" @Word ( \",\" @Word )*"`
-	Source token   `parser:"( \"with\" \"source\" @Number )?"`
-	Texts  []token `parser:"@String*"`
+	Name   token  `parser:"\"ecu\":Word @Word"`
+	Buses  gNames `parser:"\"on\":Word @@"`
+	Source token  `parser:"( \"with\":Word \"source\":Word @Number )?"`
+	Text   gTexts `parser:"@@"`
 }
 
 type gUnit struct {
-	Name  token      `parser:"\"unit\" @Word"`
+	Name  token      `parser:"\"unit\":Word @Word"`
 	Value *gQuantity `parser:"( \"=\" @@ )?"`
-	Texts []token    `parser:"@String*"`
+	Text  gTexts     `parser:"@@"`
 }
 
 type gConst struct {
-	Name  token   `parser:"\"const\" @Word"`
-	Expr  gExpr   `parser:"\"=\" @@"`
-	Texts []token `parser:"@String*"`
+	Name token  `parser:"\"const\":Word @Word"`
+	Expr *gExpr `parser:"\"=\" @@"`
+	Text gTexts `parser:"@@"`
 }
 
-// gTableHead is codes or states up to the brace.
-type gTableHead struct {
-	Word  token   `parser:"@( \"codes\" | \"states\" )"`
-	Name  token   `parser:"@Word"`
-	ByTop token   `parser:"( @\"by\" \"top\" \"byte\" )?"`
-	Texts []token `parser:"@String*"`
-}
-
-type gRaw struct {
-	Ones  token `parser:"(   @\"ones\""`
-	Less  token `parser:"    ( \"-\" @Number )?"`
-	Value token `parser:"  | @Number )"`
-}
-
-type gRawRange struct {
-	Low  gRaw  `parser:"@@"`
-	High *gRaw `parser:"( \"..\" @@ )?"`
+type gTable struct {
+	Word    token     `parser:"@( \"codes\":Word | \"states\":Word )"`
+	Name    token     `parser:"@Word"`
+	ByTop   token     `parser:"( @\"by\":Word \"top\":Word \"byte\":Word )?"`
+	Text    gTexts    `parser:"@@"`
+	Entries []*gEntry `parser:"\"{\" @@* \"}\""`
 }
 
 type gEntry struct {
-	Raws  gRawRange `parser:"@@ \":\""`
-	First token     `parser:"@Word"`
-	Name  token     `parser:"@Word?"`
-	Texts []token   `parser:"@String*"`
+	Raws  gRaws  `parser:"@@ \":\""`
+	First token  `parser:"@Word"`
+	Name  token  `parser:"@Word?"`
+	Text  gTexts `parser:"@@"`
 }
 
-type gCurveHead struct {
-	Name    token   `parser:"\"curve\" @Word"`
-	From    token   `parser:"\"from\" @Unit"`
-	To      token   `parser:"\"to\" @Unit"`
-	Outside token   `parser:"\"outside\" @( \"hold\" | \"extend\" | \"none\" )"`
-	Texts   []token `parser:"@String*"`
+type gCurve struct {
+	Name    token     `parser:"\"curve\":Word @Word"`
+	From    gUnitRef  `parser:"\"from\":Word @@"`
+	To      gUnitRef  `parser:"\"to\":Word @@"`
+	Outside token     `parser:"\"outside\":Word @( \"hold\":Word | \"extend\":Word | \"none\":Word )"`
+	Text    gTexts    `parser:"@@"`
+	Points  []*gPoint `parser:"\"{\" @@* \"}\""`
 }
 
 type gPoint struct {
-	X gQuantity `parser:"@@ \":\""`
-	Y gQuantity `parser:"@@"`
+	X gValue `parser:"@@ \":\""`
+	Y gValue `parser:"@@"`
 }
 
 type gIDForm struct {
-	Name   token           `parser:"\"idform\" @Word"`
-	Bits   token           `parser:"@Number \"bits\""`
-	Texts  []token         `parser:"@String*"`
+	Name   token           `parser:"\"idform\":Word @Word"`
+	Bits   token           `parser:"@Number \"bits\":Word"`
+	Text   gTexts          `parser:"@@"`
 	Fields []*gIDFormField `parser:"\"{\" @@ ( \",\" @@ )* \"}\""`
 }
 
@@ -123,289 +108,287 @@ type gIDFormField struct {
 }
 
 type gCRC struct {
-	Name  token      `parser:"\"crc\" @Word"`
-	Bits  token      `parser:"@Number \"bits\""`
-	Texts []token    `parser:"@String*"`
-	Items []*gCRCKey `parser:"\"{\" @@* \"}\""`
+	Name  token       `parser:"\"crc\":Word @Word"`
+	Bits  token       `parser:"@Number \"bits\":Word"`
+	Text  gTexts      `parser:"@@"`
+	Items []*gCRCItem `parser:"\"{\" @@* \"}\""`
 }
 
-type gCRCKey struct {
-	Key       token `parser:"(   @( \"polynomial\" | \"initial\" | \"final\" | \"check\" )"`
+type gCRCItem struct {
+	Key       token `parser:"(   @( \"polynomial\":Word | \"initial\":Word | \"final\":Word | \"check\":Word )"`
 	Value     token `parser:"    @Number"`
-	Reflected token `parser:"  | \"reflected\" @( \"input\" | \"output\" ) )"`
+	Reflected token `parser:"  | \"reflected\":Word @( \"input\":Word | \"output\":Word ) )"`
 }
 
-type gShapeHead struct {
-	Name  token   `parser:"\"shape\" @Word"`
-	Size  token   `parser:"@Number ( \"bytes\" | \"byte\" )"`
-	Texts []token `parser:"@String*"`
+type gShape struct {
+	Name token  `parser:"\"shape\":Word @Word"`
+	Size token  `parser:"@Number ( \"bytes\":Word | \"byte\" )"`
+	Text gTexts `parser:"@@"`
+	Body gBody  `parser:"@@"`
+}
+
+type gMessage struct {
+	Name  token  `parser:"\"message\":Word @Word"`
+	ID    gID    `parser:"@@"`
+	Bus   token  `parser:"\"on\":Word @Word \",\""`
+	FD    token  `parser:"@\"fd\":Word?"`
+	Least token  `parser:"( @\"at\" \"least\":Word )?"`
+	Size  token  `parser:"@Number ( \"bytes\":Word | \"byte\" )"`
+	Text  gTexts `parser:"@@"`
+	Body  gBody  `parser:"@@"`
 }
 
 type gID struct {
 	Number token       `parser:"(   @Number"`
 	Form   *gPath      `parser:"  | @@"`
-	Fields []*gIDField `parser:"    \"(\" ( @@ ( \",\" @@ )* )? \")\" )"`
+	Fields []*gIDField `parser:"    \"(\" ( @@ ( \",\" @@ )* )?"`
+	Close  token       `parser:"    @\")\" )"`
 }
 
 type gIDField struct {
 	Name    token `parser:"@Word"`
-	Usually token `parser:"@\"usually\"?"`
+	Usually token `parser:"@\"usually\":Word?"`
 	Value   token `parser:"@Number"`
 }
 
-type gMessageHead struct {
-	Name  token   `parser:"\"message\" @Word"`
-	ID    gID     `parser:"@@"`
-	Bus   token   `parser:"\"on\" @Word \",\""`
-	FD    token   `parser:"@\"fd\"?"`
-	Least token   `parser:"( @\"at\" \"least\" )?"`
-	Size  token   `parser:"@Number ( \"bytes\" | \"byte\" )"`
-	Texts []token `parser:"@String*"`
+type gBody struct {
+	Open  token    `parser:"@\"{\""`
+	Items []*gItem `parser:"@@*"`
+	Close token    `parser:"@\"}\""`
 }
 
-type gRun struct {
-	Plus  token `parser:"@\"+\"?"`
-	Heavy token `parser:"@Number"`
-	To    token `parser:"( @\"..\""`
-	Light token `parser:"  ( @Number | "`
-	End   token `parser:"    @\"end\" ) )?"`
-}
-
-type gMember struct {
-	Name    token      `parser:"@Word \"at\""`
-	Runs    []*gRun    `parser:"@@ ( \"then\" @@ )*"`
-	Clauses []*gClause `parser:"@@*"`
-}
-
-type gClause struct {
-	Text      token       `parser:"(   @String"`
-	Expr      *gExpr      `parser:"  | \"=\" @@"`
-	In        token       `parser:"  | \"in\" @Unit"`
-	Within    *gWithin    `parser:"  | @@"`
-	Table     *gTable     `parser:"  | @@"`
-	Initial   *gInitial   `parser:"  | @@"`
-	Tolerance *gTolerance `parser:"  | @@"`
-	Replaced  *gReplaced  `parser:"  | @@"`
-	Note      *gNote      `parser:"  | @@"`
-	Kind      *gKind      `parser:"  | @@ )"`
-}
-
-type gWithin struct {
-	Word token     `parser:"@\"within\""`
-	Low  gQuantity `parser:"@@ \"..\""`
-	High gQuantity `parser:"@@"`
-}
-
-type gTable struct {
-	Word    token     `parser:"@( \"codes\" | \"states\" )"`
-	Open    token     `parser:"(   @\"{\""`
-	Entries []*gEntry `parser:"    @@* \"}\""`
-	Path    *gPath    `parser:"  | @@ )"`
-}
-
-type gInitial struct {
-	Word  token      `parser:"@\"initial\""`
-	Name  token      `parser:"(   @Word"`
-	Value *gQuantity `parser:"  | @@ )"`
-}
-
-type gTolerance struct {
-	Word  token     `parser:"@\"tolerance\""`
-	Value gQuantity `parser:"@@"`
-}
-
-type gReplaced struct {
-	Word token `parser:"@\"replaced\" \"by\""`
-	Path gPath `parser:"@@"`
-}
-
-type gNote struct {
-	Word token `parser:"@\"note\""`
-	Key  token `parser:"@Word"`
-	Text token `parser:"@String"`
-}
-
-type gKind struct {
-	Simple   token     `parser:"(   @( \"signed\" | \"float\" | \"flag\" | \"bytes\" )"`
-	Sign     token     `parser:"  | @\"sign\" \"magnitude\""`
-	Packed   token     `parser:"  | @\"packed\" \"decimal\""`
-	Text     token     `parser:"  | @\"text\""`
-	Encoding token     `parser:"    @( \"ascii\" | \"utf8\" )"`
-	Fill     token     `parser:"    ( \"fill\" @Number )?"`
-	AlwaysAt token     `parser:"  | @\"always\""`
-	Always   token     `parser:"    @Number"`
-	Counter  *gCounter `parser:"  | @@"`
-	Checksum *gMethod  `parser:"  | @@ )"`
-}
-
-type gCounter struct {
-	Word     token `parser:"@\"counter\""`
-	Low      token `parser:"@Number \"..\""`
-	High     token `parser:"@Number"`
-	Step     token `parser:"( \"step\" @Number )?"`
-	Lost     token `parser:"( \"lost\" @Number \"allowed\" )?"`
-	Repeated token `parser:"( \"repeated\" @Number \"allowed\" )?"`
-}
-
-type gMethod struct {
-	Word    token    `parser:"@\"checksum\""`
-	E2E     token    `parser:"(   @\"e2e\""`
-	Profile token    `parser:"    \"profile\" @Number"`
-	Mode    token    `parser:"    @Word? \",\""`
-	IDs     []token  `parser:"    \"id\" @Number+ \",\""`
-	Counter *gPath   `parser:"    \"counter\" @@"`
-	Name    *gPath   `parser:"  | @@ \"over\""`
-	Feeds   []*gFeed `parser:"    @@ ( \",\" @@ )* )"`
-}
-
-type gFeed struct {
-	Const token `parser:"(   @Number"`
-	Word  token `parser:"  | @( \"bytes\" | \"byte\" )"`
-	First token `parser:"    @Number"`
-	Last  token `parser:"    ( \"..\" ( @Number | "`
-	End   token `parser:"             @\"end\" ) )? )"`
-}
-
-type gGroup struct {
-	Name   token   `parser:"@Word"`
-	Keys   []token `parser:"( \"[\" ( @Word ( \",\" @Word )* |"`
-	Low    token   `parser:"        @Number"`
-	High   token   `parser:"        \"..\" @Number ) \"]\" )?"`
-	Shape  gPath   `parser:"\"is\" @@"`
-	Origin token   `parser:"\"from\" \"byte\" @Number"`
-	Step   token   `parser:"( \"step\" @Number )?"`
-	Texts  []token `parser:"@String*"`
-}
-
-type gSelectHead struct {
-	Word token `parser:"@\"select\""`
-	Path gPath `parser:"@@"`
-}
-
-type gChoice struct {
-	Name token      `parser:"(   @Word"`
-	Raws *gRawRange `parser:"  | @@ )"`
-}
-
-type gWhenHead struct {
-	Word    token      `parser:"@\"when\""`
-	Choices []*gChoice `parser:"@@ ( \",\" @@ )*"`
-}
-
-type gOtherwise struct {
-	Word token `parser:"\"otherwise\" @( \"nothing\" | \"unknown\" )"`
-}
-
-// gFact is any line of a body that begins with a word of its own.
-type gFact struct {
-	From     *gFrom     `parser:"(   @@"`
+type gItem struct {
+	Member   *gMember   `parser:"(   @@"`
+	Group    *gGroup    `parser:"  | @@"`
+	Select   *gSelect   `parser:"  | @@"`
+	From     *gFrom     `parser:"  | @@"`
 	Timing   *gTiming   `parser:"  | @@"`
-	Fill     token      `parser:"  | \"fill\" @Number"`
-	Default  *gPath     `parser:"  | \"default\" \"codes\" @@"`
 	Unused   *gUnused   `parser:"  | @@"`
+	Fill     *gFill     `parser:"  | @@"`
+	Default  *gDefault  `parser:"  | @@"`
 	Holds    *gHolds    `parser:"  | @@"`
 	Relayed  *gRelayed  `parser:"  | @@"`
 	Replaced *gReplaced `parser:"  | @@"`
 	Note     *gNote     `parser:"  | @@ )"`
 }
 
+type gMember struct {
+	Name    token      `parser:"@Member \"at\":Keyword"`
+	Place   gPlace     `parser:"@@"`
+	Clauses []*gClause `parser:"@@*"`
+	Text    gTexts     `parser:"@@"`
+}
+
+// gClause is any clause of a member, the usual ones first.
+type gClause struct {
+	Word      token      `parser:"(   @\"=\""`
+	Expr      *gExpr     `parser:"    @@"`
+	Within    *gWithin   `parser:"  | @@"`
+	Table     *gUsed     `parser:"  | @@"`
+	Kind      *gKind     `parser:"  | @@"`
+	InWord    token      `parser:"  | @\"in\":Word"`
+	In        *gUnitRef  `parser:"    @@"`
+	Initial   *gInitial  `parser:"  | @@"`
+	TolWord   token      `parser:"  | @\"tolerance\":Word"`
+	Tolerance *gQuantity `parser:"    @@"`
+	Replaced  *gReplaced `parser:"  | @@"`
+	Note      *gNote     `parser:"  | @@ )"`
+}
+
+type gWithin struct {
+	Word token     `parser:"@\"within\":Word"`
+	Low  gQuantity `parser:"@@ \"..\""`
+	High gQuantity `parser:"@@"`
+}
+
+// gUsed is a member's codes or states.
+type gUsed struct {
+	Word    token     `parser:"@( \"codes\":Word | \"states\":Word )"`
+	Open    token     `parser:"(   @\"{\""`
+	Entries []*gEntry `parser:"    @@*"`
+	Close   token     `parser:"    @\"}\""`
+	Path    *gPath    `parser:"  | @@ )"`
+}
+
+type gInitial struct {
+	Word  token      `parser:"@\"initial\":Word"`
+	Name  token      `parser:"(   @Word"`
+	Value *gQuantity `parser:"  | @@ )"`
+}
+
+type gReplaced struct {
+	Word token `parser:"@\"replaced\":Word \"by\":Word"`
+	Path gPath `parser:"@@"`
+}
+
+type gNote struct {
+	Word token `parser:"@\"note\":Word"`
+	Key  token `parser:"@Word"`
+	Text token `parser:"@String"`
+}
+
+type gKind struct {
+	Simple   token     `parser:"(   @( \"signed\":Word | \"float\":Word | \"flag\":Word | \"bytes\":Word )"`
+	Two      token     `parser:"  | @\"sign\":Word"`
+	Second   token     `parser:"    @\"magnitude\":Word"`
+	Packed   token     `parser:"  | @\"packed\":Word"`
+	Decimal  token     `parser:"    @\"decimal\":Word"`
+	Counter  *gCounter `parser:"  | @@"`
+	Checksum *gMethod  `parser:"  | @@"`
+	AlwaysAt token     `parser:"  | @\"always\":Word"`
+	Always   token     `parser:"    @Number"`
+	Text     token     `parser:"  | @\"text\":Word"`
+	Encoding token     `parser:"    @( \"ascii\":Word | \"utf8\":Word )"`
+	Fill     token     `parser:"    ( \"fill\":Word @Number )? )"`
+}
+
+type gCounter struct {
+	Word     token `parser:"@\"counter\":Word"`
+	Low      token `parser:"@Number \"..\""`
+	High     token `parser:"@Number"`
+	Step     token `parser:"( \"step\":Word @Number )?"`
+	Lost     token `parser:"( \"lost\":Word @Number"`
+	LostEnd  token `parser:"  @\"allowed\":Word )?"`
+	Repeated token `parser:"( \"repeated\":Word @Number"`
+	RepEnd   token `parser:"  @\"allowed\":Word )?"`
+}
+
+type gMethod struct {
+	Word    token    `parser:"@\"checksum\":Word"`
+	E2E     token    `parser:"(   @\"e2e\":Word"`
+	Profile token    `parser:"    \"profile\":Word @Number"`
+	Mode    token    `parser:"    @( \"both\":Word | \"alternating\":Word | \"low\":Word | \"nibble\":Word )? \",\""`
+	IDs     gNumbers `parser:"    \"id\":Word @@ \",\""`
+	Counter *gPath   `parser:"    \"counter\":Word @@"`
+	Name    *gPath   `parser:"  | @@ \"over\":Word"`
+	Feeds   []*gFeed `parser:"    @@ ( \",\" @@ )* )"`
+}
+
+type gFeed struct {
+	Const token `parser:"(   @Number"`
+	Word  token `parser:"  | @( \"bytes\":Word | \"byte\":Word )"`
+	First token `parser:"    @Number"`
+	Last  token `parser:"    ( \"..\" ( @Number | "`
+	End   token `parser:"             @\"end\":Word ) )? )"`
+}
+
+type gGroup struct {
+	Name   token  `parser:"@Group"`
+	Keys   gNames `parser:"( \"[\" ( @@ |"`
+	Low    token  `parser:"        @Number"`
+	High   token  `parser:"        \"..\" @Number ) \"]\" )?"`
+	Shape  gPath  `parser:"\"is\":Keyword @@"`
+	Origin token  `parser:"\"from\":Word \"byte\":Word @Number"`
+	Step   token  `parser:"( \"step\":Word @Number )?"`
+	Text   gTexts `parser:"@@"`
+}
+
+type gSelect struct {
+	Word     token      `parser:"@\"select\":Word"`
+	Path     gPath      `parser:"@@ \"{\""`
+	Branches []*gBranch `parser:"@@*"`
+	Close    token      `parser:"@\"}\""`
+}
+
+type gBranch struct {
+	When      token      `parser:"(   @\"when\":Word"`
+	Choices   []*gChoice `parser:"    @@ ( \",\" @@ )*"`
+	Body      *gBody     `parser:"    @@"`
+	Otherwise token      `parser:"  | @\"otherwise\":Word"`
+	Word      token      `parser:"    (   @( \"nothing\":Word | \"unknown\":Word )"`
+	Else      *gBody     `parser:"      | @@ ) )"`
+}
+
+type gChoice struct {
+	Name token  `parser:"(   @Word"`
+	Raws *gRaws `parser:"  | @@ )"`
+}
+
 type gFrom struct {
-	First     token   `parser:"\"from\" @Word"`
-	Join      []token `parser:"( @( \",\" | \"or\" )"`
-	Senders   []token `parser:"  @Word )*"`
-	Receivers []token `parser:"( \"to\" @Word ( \",\" @Word )* )?"`
+	Word      token    `parser:"@\"from\":Word"`
+	Senders   gSenders `parser:"@@"`
+	Receivers gNames   `parser:"( \"to\":Word @@ )?"`
 }
 
 type gTiming struct {
-	Every   *gQuantity `parser:"(   \"every\" @@"`
-	OrWord  token      `parser:"    ( \"or\" \"on\" @( \"change\" | \"request\" ) )?"`
-	OnWord  token      `parser:"  | \"on\" @( \"change\" | \"request\" ) )"`
-	Clauses []*gWait   `parser:"( \",\" @@ )*"`
+	EveryAt token      `parser:"(   @\"every\":Word"`
+	Every   *gQuantity `parser:"    @@"`
+	OrWord  token      `parser:"    ( \"or\":Word \"on\":Word @( \"change\":Word | \"request\":Word ) )?"`
+	OnAt    token      `parser:"  | @\"on\":Word"`
+	OnWord  token      `parser:"    @( \"change\":Word | \"request\":Word ) )"`
+	Waits   []*gWait   `parser:"( \",\" @@ )*"`
 }
 
 type gWait struct {
-	Gap  *gQuantity `parser:"(   \"at\" \"least\" @@ \"apart\""`
-	Lost *gQuantity `parser:"  | \"lost\" \"after\" @@ )"`
+	Gap   *gQuantity `parser:"(   \"at\" \"least\":Word @@"`
+	Apart token      `parser:"    @\"apart\":Word"`
+	Lost  *gQuantity `parser:"  | \"lost\":Word \"after\":Word @@ )"`
+}
+
+type gFill struct {
+	Word  token `parser:"@\"fill\":Word"`
+	Value token `parser:"@Number"`
+}
+
+type gDefault struct {
+	Word token `parser:"@\"default\":Word \"codes\":Word"`
+	Path gPath `parser:"@@"`
 }
 
 type gUnused struct {
-	Runs []*gRun `parser:"\"unused\" @@ ( \",\" @@ )*"`
+	Word token  `parser:"@\"unused\":Word"`
+	Runs []gRun `parser:"@@ ( \",\" @@ )*"`
 }
 
 type gHolds struct {
-	Shape  gPath `parser:"\"holds\" @@"`
-	Origin token `parser:"\"from\" \"byte\" @Number"`
+	Word   token `parser:"@\"holds\":Word"`
+	Shape  gPath `parser:"@@"`
+	Origin token `parser:"\"from\":Word \"byte\":Word @Number"`
 }
 
 type gRelayed struct {
-	By token `parser:"\"relayed\" \"by\" @Word"`
-	To token `parser:"\"to\" @Word"`
-	As *gID  `parser:"( \"as\" @@ )?"`
+	Word token `parser:"@\"relayed\":Word \"by\":Word"`
+	By   token `parser:"@Word"`
+	To   token `parser:"\"to\":Word @Word"`
+	As   *gID  `parser:"( \"as\":Word @@ )?"`
 }
 
-// whole names every production once, so that the library builds them all.
+// whole names what is parsed by itself, so that the library builds it all.
 type whole struct {
-	Version    *gVersion     `parser:"  @@"`
-	Network    *gNetwork     `parser:"| @@"`
-	Use        *gUse         `parser:"| @@"`
-	Bus        *gBus         `parser:"| @@"`
-	ECU        *gECU         `parser:"| @@"`
-	Unit       *gUnit        `parser:"| @@"`
-	Const      *gConst       `parser:"| @@"`
-	TableHead  *gTableHead   `parser:"| @@"`
-	Entry      *gEntry       `parser:"| @@"`
-	CurveHead  *gCurveHead   `parser:"| @@"`
-	Point      *gPoint       `parser:"| @@"`
-	IDForm     *gIDForm      `parser:"| @@"`
-	CRC        *gCRC         `parser:"| @@"`
-	ShapeHead  *gShapeHead   `parser:"| @@"`
-	Message    *gMessageHead `parser:"| @@"`
-	Member     *gMember      `parser:"| @@"`
-	Group      *gGroup       `parser:"| @@"`
-	SelectHead *gSelectHead  `parser:"| @@"`
-	When       *gWhenHead    `parser:"| @@"`
-	Otherwise  *gOtherwise   `parser:"| @@"`
-	Fact       *gFact        `parser:"| @@"`
+	Version *gVersion `parser:"  @@"`
+	Network *gNetwork `parser:"| @@"`
+	Use     *gUse     `parser:"| @@"`
+	Decl    *gDecl    `parser:"| @@"`
+	Entry   *gEntry   `parser:"| @@"`
+	Point   *gPoint   `parser:"| @@"`
+	Item    *gItem    `parser:"| @@"`
+	Clause  *gClause  `parser:"| @@"`
+	Branch  *gBranch  `parser:"| @@"`
 }
 
 // parsers has one parser for each kind of piece.
 type parsers struct {
-	version   *participle.Parser[gVersion]
-	network   *participle.Parser[gNetwork]
-	use       *participle.Parser[gUse]
-	bus       *participle.Parser[gBus]
-	ecu       *participle.Parser[gECU]
-	unit      *participle.Parser[gUnit]
-	constant  *participle.Parser[gConst]
-	table     *participle.Parser[gTableHead]
-	entry     *participle.Parser[gEntry]
-	curve     *participle.Parser[gCurveHead]
-	point     *participle.Parser[gPoint]
-	idform    *participle.Parser[gIDForm]
-	crc       *participle.Parser[gCRC]
-	shape     *participle.Parser[gShapeHead]
-	message   *participle.Parser[gMessageHead]
-	member    *participle.Parser[gMember]
-	group     *participle.Parser[gGroup]
-	selectP   *participle.Parser[gSelectHead]
-	when      *participle.Parser[gWhenHead]
-	otherwise *participle.Parser[gOtherwise]
-	fact      *participle.Parser[gFact]
+	version *participle.Parser[gVersion]
+	network *participle.Parser[gNetwork]
+	use     *participle.Parser[gUse]
+	decl    *participle.Parser[gDecl]
+	entry   *participle.Parser[gEntry]
+	point   *participle.Parser[gPoint]
+	item    *participle.Parser[gItem]
+	clause  *participle.Parser[gClause]
+	branch  *participle.Parser[gBranch]
 }
 
 func newParsers() (*parsers, error) {
-	p, err := participle.Build[whole](participle.Lexer(definition{}), participle.UseLookahead(1), participle.Elide("Comment"))
+	p, err := participle.Build[whole](participle.Lexer(definition{}), participle.UseLookahead(1))
 	if err != nil {
 		return nil, err
 	}
 	out := &parsers{}
 	for _, e := range []error{
-		production(p, &out.version), production(p, &out.network), production(p, &out.use), production(p, &out.bus),
-		production(p, &out.ecu), production(p, &out.unit), production(p, &out.constant), production(p, &out.table),
-		production(p, &out.entry), production(p, &out.curve), production(p, &out.point), production(p, &out.idform),
-		production(p, &out.crc), production(p, &out.shape), production(p, &out.message), production(p, &out.member),
-		production(p, &out.group), production(p, &out.selectP), production(p, &out.when), production(p, &out.otherwise),
-		production(p, &out.fact),
+		production(p, &out.version), production(p, &out.network), production(p, &out.use), production(p, &out.decl),
+		production(p, &out.entry), production(p, &out.point), production(p, &out.item), production(p, &out.clause),
+		production(p, &out.branch),
 	} {
 		if e != nil {
 			return nil, e

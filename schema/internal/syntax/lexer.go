@@ -6,13 +6,19 @@ import (
 	"unicode/utf8"
 
 	"github.com/alecthomas/participle/v2/lexer"
+
+	"busloom/unit"
 )
 
-// The types of token. Keyword is one of the four reserved words; every other
-// word of the language is a Word, so that clauses to come take no names away.
+// The types of token. Keyword is one of the four reserved words. A word inside
+// braces that stands before at, is or [ names a member or a group: it has a
+// type of its own, so that no word of the language is ever taken away from
+// names by a clause to come.
 const (
 	tokEOF lexer.TokenType = lexer.EOF - iota
 	tokWord
+	tokMember // a name before at
+	tokGroup  // a name before is or [
 	tokKeyword
 	tokNumber
 	tokUnit
@@ -20,33 +26,12 @@ const (
 	tokPunct
 	tokComment
 	tokInvalid
+	tokClosing // a brace put in where the text lacks one
 )
 
 var symbols = map[string]lexer.TokenType{
-	"EOF": tokEOF, "Word": tokWord, "Keyword": tokKeyword, "Number": tokNumber, "Unit": tokUnit,
-	"String": tokString, "Punct": tokPunct, "Comment": tokComment, "Invalid": tokInvalid,
-}
-
-// notUnits are the words that follow a number on its line without being its
-// unit.
-var notUnits = wordSet(
-	"allowed", "alternating", "always", "apart", "as", "at", "bits", "both", "byte", "bytes", "check", "checksum", "codes", "counter",
-	"decimal", "ecu", "extend", "fd", "fill", "final", "flag", "float", "from", "hold", "id", "in", "initial", "input",
-	"is", "lost", "low", "nibble", "magnitude", "none", "note", "on", "ones", "or", "otherwise", "outside", "output", "over", "packed",
-	"polynomial", "raw", "reflected", "repeated", "replaced", "select", "sign", "signed", "states", "step", "text",
-	"then", "to", "tolerance", "when", "with", "within", "unused", "holds", "default", "relayed", "every", "end",
-)
-
-// NotUnit reports whether a word can't be the name of a unit, because it may
-// follow a number as a word of the language.
-func NotUnit(word string) bool { return notUnits[word] }
-
-func wordSet(words ...string) map[string]bool {
-	out := make(map[string]bool, len(words))
-	for _, w := range words {
-		out[w] = true
-	}
-	return out
+	"EOF": tokEOF, "Word": tokWord, "Member": tokMember, "Group": tokGroup, "Keyword": tokKeyword,
+	"Number": tokNumber, "Unit": tokUnit, "String": tokString, "Punct": tokPunct, "Comment": tokComment, "Invalid": tokInvalid,
 }
 
 // definition is the hand-written lexer as the parser library wants it.
@@ -54,68 +39,106 @@ type definition struct{}
 
 func (definition) Symbols() map[string]lexer.TokenType { return symbols }
 
-func (definition) Lex(name string, r io.Reader) (lexer.Lexer, error) {
+func (d definition) Lex(name string, r io.Reader) (lexer.Lexer, error) {
 	text, err := io.ReadAll(r)
 	if err != nil {
 		return nil, err
 	}
-	return definition{}.LexBytes(name, text)
+	return d.LexBytes(name, text)
 }
 
-func (definition) LexString(name, text string) (lexer.Lexer, error) {
-	return definition{}.LexBytes(name, []byte(text))
+func (d definition) LexString(name, text string) (lexer.Lexer, error) {
+	return d.LexBytes(name, []byte(text))
 }
 
 func (definition) LexBytes(_ string, text []byte) (lexer.Lexer, error) {
-	return &sliceLexer{tokens: scan(text)}, nil
+	s := scan(text)
+	return &sliceLexer{text: string(text), toks: s.toks, end: len(text)}, nil
 }
 
-// sliceLexer hands out tokens that were cut before.
+// tok is a token in 16 bytes, since a file may have millions. The parser
+// library gets its own form of it for one piece of text at a time.
+type tok struct {
+	start, end int32 // bytes of the text
+	line       int32
+	kind       int8
+}
+
+func (t tok) is(kind lexer.TokenType) bool { return lexer.TokenType(t.kind) == kind }
+
+// sliceLexer hands a piece of the tokens to the parser library.
 type sliceLexer struct {
-	tokens []lexer.Token
-	end    lexer.Position
-	next   int
+	text string
+	toks []tok
+	next int
+	end  int // offset of what follows the piece
 }
 
 func (s *sliceLexer) Next() (lexer.Token, error) {
-	if s.next == len(s.tokens) {
-		return lexer.EOFToken(s.end), nil
+	if s.next == len(s.toks) {
+		return lexer.EOFToken(lexer.Position{Offset: s.end}), nil
 	}
+	t := s.toks[s.next]
 	s.next++
-	return s.tokens[s.next-1], nil
+	if t.is(tokClosing) {
+		return lexer.Token{Type: tokPunct, Value: "}", Pos: lexer.Position{Offset: int(t.start), Line: int(t.line)}}, nil
+	}
+	return lexer.Token{
+		Type:  lexer.TokenType(t.kind),
+		Value: s.text[t.start:t.end],
+		Pos:   lexer.Position{Offset: int(t.start), Line: int(t.line)},
+	}, nil
 }
 
-// scanner cuts a text into tokens. Blanks are not tokens; Position.Line tells
-// lines apart.
+// scanner cuts a text into tokens. Blanks are no tokens; lines are told apart
+// by number.
 type scanner struct {
-	text      []byte
-	at        int
-	line      int
-	lineStart int
-	tokens    []lexer.Token
-	// inCurve is set between the word curve and its brace: there, what follows
-	// from and to is a unit.
-	inCurve bool
+	text     []byte
+	at       int
+	line     int32
+	depth    int // of braces
+	toks     []tok
+	comments []tok
+	bad      []badToken
 }
 
-func scan(text []byte) []lexer.Token {
-	s := &scanner{text: text, line: 1, tokens: make([]lexer.Token, 0, len(text)/5+8)}
+// badToken is an Invalid token with what is wrong with it.
+type badToken struct {
+	tok
+	number error // of a number that is none
+}
+
+func scan(text []byte) *scanner {
+	s := &scanner{text: text, line: 1, toks: make([]tok, 0, len(text)/5+8)}
 	if bytes.HasPrefix(text, []byte("\ufeff")) {
-		s.at, s.lineStart = 3, 3
+		s.at = 3
 	}
 	for s.at < len(text) {
 		s.step()
 	}
-	return s.tokens
+	return s
 }
 
+// emit adds the token from the current place to end. The token before it is
+// then known to be a name, if this one is at, is or [ inside braces.
 func (s *scanner) emit(kind lexer.TokenType, end int) {
-	s.tokens = append(s.tokens, lexer.Token{
-		Type:  kind,
-		Value: string(s.text[s.at:end]),
-		Pos:   lexer.Position{Offset: s.at, Line: s.line, Column: s.at - s.lineStart + 1},
-	})
+	t := tok{start: int32(s.at), end: int32(end), line: s.line, kind: int8(kind)}
 	s.at = end
+	if s.depth > 0 && len(s.toks) > 0 {
+		if last := &s.toks[len(s.toks)-1]; last.is(tokWord) || last.is(tokUnit) && s.isPlainWord(*last) {
+			switch {
+			case kind == tokKeyword && string(s.text[t.start:t.end]) == "at":
+				last.kind = int8(tokMember)
+			case kind == tokKeyword && string(s.text[t.start:t.end]) == "is", kind == tokPunct && s.text[t.start] == '[':
+				last.kind = int8(tokGroup)
+			}
+		}
+	}
+	s.toks = append(s.toks, t)
+}
+
+func (s *scanner) isPlainWord(t tok) bool {
+	return isLetter(s.text[t.start]) && s.endOfWord(int(t.start)) == int(t.end)
 }
 
 func (s *scanner) step() {
@@ -124,11 +147,8 @@ func (s *scanner) step() {
 	case c == '\n':
 		s.line++
 		s.at++
-		s.lineStart = s.at
 	case c == ' ' || c == '\t' || c == '\r':
 		s.at++
-	case s.unitFollows():
-		s.emit(tokUnit, s.endOfUnit(s.at))
 	case isLetter(c):
 		s.word()
 	case c >= '0' && c <= '9':
@@ -136,24 +156,30 @@ func (s *scanner) step() {
 	case c == '"':
 		s.quoted()
 	case c == '/' && s.peek(1) == '/':
-		end := s.at
-		for end < len(s.text) && s.text[end] != '\n' {
-			end++
-		}
-		if end > s.at && s.text[end-1] == '\r' {
-			end--
-		}
-		s.emit(tokComment, end)
+		s.comment()
 	case c == '.' && s.peek(1) == '.':
 		s.emit(tokPunct, s.at+2)
-	case bytes.IndexByte([]byte("{}()[],:=+-*/."), c) >= 0:
-		if c == '{' {
-			s.inCurve = false
+	case isPunctByte(c):
+		switch c {
+		case '{':
+			s.depth++
+		case '}':
+			s.depth = max(s.depth-1, 0)
 		}
 		s.emit(tokPunct, s.at+1)
+	case s.unitBegins(s.at):
+		s.emit(tokUnit, s.endOfUnit(s.at))
 	default:
 		s.invalid()
 	}
+}
+
+func isPunctByte(c byte) bool {
+	switch c {
+	case '{', '}', '(', ')', '[', ']', ',', ':', '=', '+', '-', '*', '/', '.', '^':
+		return true
+	}
+	return false
 }
 
 func (s *scanner) peek(ahead int) byte {
@@ -167,7 +193,9 @@ func isLetter(c byte) bool {
 	return c >= 'a' && c <= 'z' || c >= 'A' && c <= 'Z' || c == '_'
 }
 
-func isWordByte(c byte) bool { return isLetter(c) || c >= '0' && c <= '9' }
+func isDigit(c byte) bool { return c >= '0' && c <= '9' }
+
+func isWordByte(c byte) bool { return isLetter(c) || isDigit(c) }
 
 func (s *scanner) endOfWord(at int) int {
 	for at < len(s.text) && isWordByte(s.text[at]) {
@@ -176,56 +204,108 @@ func (s *scanner) endOfWord(at int) int {
 	return at
 }
 
+func (s *scanner) comment() {
+	end := s.at
+	for end < len(s.text) && s.text[end] != '\n' {
+		end++
+	}
+	next := end
+	for end > s.at && (s.text[end-1] == '\r' || s.text[end-1] == ' ' || s.text[end-1] == '\t') {
+		end--
+	}
+	s.comments = append(s.comments, tok{start: int32(s.at), end: int32(end), line: s.line, kind: int8(tokComment)})
+	s.at = next
+}
+
+// word takes a word; behind a number on its line it is a unit, with what is
+// glued to it.
 func (s *scanner) word() {
 	end := s.endOfWord(s.at)
-	kind := tokWord
 	switch string(s.text[s.at:end]) {
 	case "at", "is", "ones", "raw":
-		kind = tokKeyword
-	case "curve":
-		s.inCurve = true
+		s.emit(tokKeyword, end)
+		return
 	}
-	s.emit(kind, end)
+	if n := len(s.toks); n > 0 && s.toks[n-1].is(tokNumber) && s.toks[n-1].line == s.line && !notUnits[string(s.text[s.at:end])] {
+		s.emit(tokUnit, s.endOfUnit(s.at))
+		return
+	}
+	s.emit(tokWord, end)
 }
 
 // number takes digits with underscores, 0x and 0b, a point if a digit
-// follows, an exponent, and a glued fraction. What is glued to it beyond that
-// makes it a bad number, which is told later from its text.
+// follows, an exponent, and a glued fraction. A unit may be glued to a decimal
+// number (10ms), so the number ends before a letter that belongs to none.
 func (s *scanner) number() {
 	end := s.simpleNumber(s.at)
 	if end+1 < len(s.text) && s.text[end] == '/' && isDigit(s.text[end+1]) {
 		end = s.simpleNumber(end + 1)
 	}
+	if plainNumber(s.text[s.at:end]) {
+		s.emit(tokNumber, end)
+		return
+	}
+	if _, err := unit.ParseNumber(string(s.text[s.at:end])); err != nil {
+		s.emit(tokInvalid, end)
+		s.bad = append(s.bad, badToken{tok: s.toks[len(s.toks)-1], number: err})
+		return
+	}
 	s.emit(tokNumber, end)
 }
 
-func isDigit(c byte) bool { return c >= '0' && c <= '9' }
+// plainNumber reports whether a text is a decimal number without anything
+// special, as most are.
+func plainNumber(text []byte) bool {
+	if len(text) > 30 {
+		return false
+	}
+	for _, c := range text {
+		if !isDigit(c) && c != '.' {
+			return false
+		}
+	}
+	return true
+}
 
 func (s *scanner) simpleNumber(at int) int {
-	end := s.endOfWord(at)
-	based := end-at > 1 && s.text[at] == '0' && (s.text[at+1] == 'x' || s.text[at+1] == 'b')
-	if based {
-		return end
+	if s.text[at] == '0' && at+1 < len(s.text) && (s.text[at+1] == 'x' || s.text[at+1] == 'b') {
+		return s.endOfWord(at)
 	}
+	end := s.endOfDigits(at)
 	if end+1 < len(s.text) && s.text[end] == '.' && isDigit(s.text[end+1]) {
-		end = s.endOfWord(end + 1)
+		end = s.endOfDigits(end + 1)
 	}
-	// 1e-3: the word ended at the sign.
-	if c := s.text[end-1]; (c == 'e' || c == 'E') && end+1 < len(s.text) && (s.text[end] == '-' || s.text[end] == '+') && isDigit(s.text[end+1]) {
-		end = s.endOfWord(end + 1)
+	if end+1 < len(s.text) && (s.text[end] == 'e' || s.text[end] == 'E') {
+		exponent := end + 1
+		if s.text[exponent] == '-' || s.text[exponent] == '+' {
+			exponent++
+		}
+		if exponent < len(s.text) && isDigit(s.text[exponent]) {
+			end = s.endOfDigits(exponent)
+		}
 	}
 	return end
 }
 
-// quoted takes a text up to its quote on the same line.
+func (s *scanner) endOfDigits(at int) int {
+	for at < len(s.text) && (isDigit(s.text[at]) || s.text[at] == '_') {
+		at++
+	}
+	return at
+}
+
+// quoted takes a text up to its quote on the same line. One that isn't closed
+// ends before a brace that ends the line, so that blocks stay matched.
 func (s *scanner) quoted() {
 	for end := s.at + 1; end < len(s.text) && s.text[end] != '\n'; end++ {
 		switch s.text[end] {
 		case '\\':
-			end++
+			if end+1 < len(s.text) && s.text[end+1] != '\n' {
+				end++
+			}
 		case '"':
 			if !utf8.Valid(s.text[s.at : end+1]) {
-				s.emit(tokInvalid, end+1)
+				s.emitInvalid(end + 1)
 				return
 			}
 			s.emit(tokString, end+1)
@@ -233,10 +313,22 @@ func (s *scanner) quoted() {
 		}
 	}
 	end := s.at
-	for end < len(s.text) && s.text[end] != '\n' && s.text[end] != '\r' {
+	for end < len(s.text) && s.text[end] != '\n' {
 		end++
 	}
+	for end > s.at+1 && (s.text[end-1] == '\r' || s.text[end-1] == ' ' || s.text[end-1] == '\t') {
+		end--
+	}
+	if end > s.at+1 && s.text[end-1] == '{' {
+		for end--; end > s.at+1 && (s.text[end-1] == ' ' || s.text[end-1] == '\t'); end-- {
+		}
+	}
+	s.emitInvalid(end)
+}
+
+func (s *scanner) emitInvalid(end int) {
 	s.emit(tokInvalid, end)
+	s.bad = append(s.bad, badToken{tok: s.toks[len(s.toks)-1]})
 }
 
 // invalid takes all bytes in a row that begin no token.
@@ -244,37 +336,15 @@ func (s *scanner) invalid() {
 	end := s.at + 1
 	for end < len(s.text) {
 		c := s.text[end]
-		if c <= ' ' || isWordByte(c) || bytes.IndexByte([]byte("{}()[],:=+-*/.\""), c) >= 0 {
+		if c == ' ' || c == '\t' || c == '\r' || c == '\n' || c == '"' || isWordByte(c) || isPunctByte(c) || s.unitBegins(end) {
 			break
 		}
 		end++
 	}
-	s.emit(tokInvalid, end)
+	s.emitInvalid(end)
 }
 
-// unitFollows reports whether a unit begins here: after a number on the same
-// line, after the word in, or after from and to in the head of a curve.
-func (s *scanner) unitFollows() bool {
-	if len(s.tokens) == 0 || !s.unitBegins(s.at) {
-		return false
-	}
-	last := &s.tokens[len(s.tokens)-1]
-	if last.Pos.Line != s.line {
-		return false
-	}
-	word := string(s.text[s.at:s.endOfWord(s.at)])
-	switch last.Type {
-	case tokNumber:
-		return !notUnits[word]
-	case tokWord:
-		if last.Value == "in" || (s.inCurve && (last.Value == "from" || last.Value == "to")) {
-			return word != "at" && word != "is"
-		}
-	}
-	return false
-}
-
-// unitBegins reports whether the byte can begin a name in a unit.
+// unitBegins reports whether a byte can begin a name in a unit.
 func (s *scanner) unitBegins(at int) bool {
 	if at >= len(s.text) {
 		return false
@@ -287,9 +357,10 @@ func (s *scanner) unitBegins(at int) bool {
 		return false
 	}
 	r, _ := utf8.DecodeRune(s.text[at:])
-	return r == '°' || r == 'µ' || r == 'μ' || r == 'Ω'
+	return r == '°' || r == 'µ' || r == 'μ' || r == 'Ω' || r == '\u2126'
 }
 
+// endOfUnit takes names with powers, joined by / and * without blanks.
 func (s *scanner) endOfUnit(at int) int {
 	for {
 		at = s.endOfUnitName(at)

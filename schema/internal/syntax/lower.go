@@ -1,6 +1,7 @@
 package syntax
 
 import (
+	"fmt"
 	"math/big"
 	"strconv"
 	"strings"
@@ -9,59 +10,65 @@ import (
 	"busloom/unit"
 )
 
-// Making the tree of what the parser library filled in.
+// lowering makes the tree of what the parser library filled in. What a piece
+// can't mean whatever its names stand for is told here.
+type lowering struct {
+	src      *diag.File
+	problems *diag.List
+	// numbers keeps one value for each way of writing, since descriptions
+	// write the same few numbers again and again. Values in the tree are never
+	// changed.
+	numbers map[string]*big.Rat
+}
 
-var bigVersion = big.NewInt(LanguageVersion)
+func (l *lowering) span(t *token) diag.Span {
+	// A brace that was put in at the end of the file isn't in its text.
+	return diag.Span{File: l.src, Start: t.Pos.Offset, End: min(t.Pos.Offset+len(t.Value), len(l.src.Text))}
+}
 
-func (p *parser) name(t token) Name { return Name{t.Value, p.tokenSpan(&t)} }
+func (l *lowering) name(t *token) Name { return Name{t.Value, l.span(t)} }
 
-func (p *parser) names(tokens []token) []Name {
+func (l *lowering) names(tokens []token) []Name {
 	var out []Name
-	for _, t := range tokens {
-		out = append(out, p.name(t))
+	for i := range tokens {
+		out = append(out, l.name(&tokens[i]))
 	}
 	return out
 }
 
-func (p *parser) optionalName(t token) *Name {
-	if t.Value == "" {
-		return nil
-	}
-	n := p.name(t)
-	return &n
-}
-
-// number reads a number token; bad ones were reported and replaced by Invalid
-// before, so they don't come here.
-func (p *parser) number(t token) Number {
-	v, err := unit.ParseNumber(t.Value)
-	if err != nil {
-		v = new(big.Rat)
-	}
-	return Number{t.Value, v, p.tokenSpan(&t)}
-}
-
-func (p *parser) optionalNumber(t token) *Number {
-	if t.Value == "" {
-		return nil
-	}
-	n := p.number(t)
-	return &n
-}
-
-func (p *parser) unit(t token) UnitRef { return UnitRef{t.Value, p.tokenSpan(&t)} }
-
-func (p *parser) texts(tokens []token) Text {
-	var out Text
-	for i, t := range tokens {
-		span := p.tokenSpan(&t)
-		if i == 0 {
-			out.Span = span
+func (l *lowering) number(t *token) Number {
+	v := l.numbers[t.Value]
+	if v == nil {
+		var err error
+		if v, err = unit.ParseNumber(t.Value); err != nil {
+			v = new(big.Rat) // the lexer lets no such number through
 		}
-		out.Span = out.Span.To(span)
-		out.Given = true
-		out.Parts = append(out.Parts, unquote(t.Value))
-		out.Value += out.Parts[i]
+		l.numbers[t.Value] = v
+	}
+	return Number{t.Value, v, l.span(t)}
+}
+
+func (l *lowering) optionalNumber(t *token) *Number {
+	if t.Value == "" {
+		return nil
+	}
+	n := l.number(t)
+	return &n
+}
+
+func (l *lowering) texts(g gTexts) Text {
+	var out Text
+	if len(g.toks) == 0 {
+		return out
+	}
+	out.Given, out.Span = true, l.span(&g.toks[0]).To(l.span(&g.toks[len(g.toks)-1]))
+	out.Parts = make([]string, len(g.toks))
+	for i := range g.toks {
+		out.Parts[i] = unquote(g.toks[i].Value)
+	}
+	out.Value = out.Parts[0]
+	if len(out.Parts) > 1 {
+		out.Value = strings.Join(out.Parts, "")
 	}
 	return out
 }
@@ -92,80 +99,90 @@ func quote(text string) string {
 	return `"` + strings.NewReplacer(`\`, `\\`, `"`, `\"`, "\n", `\n`).Replace(text) + `"`
 }
 
-func (p *parser) quantity(g *gQuantity) Quantity {
-	q := Quantity{Negative: g.Minus.Value != "", Number: p.number(g.Number)}
+func (l *lowering) quantity(g *gQuantity) Quantity {
+	q := Quantity{Negative: g.minus.Value != "", Number: l.number(&g.number)}
 	q.Span = q.Number.Span
 	if q.Negative {
-		q.Span = p.tokenSpan(&g.Minus).To(q.Span)
+		q.Span = l.span(&g.minus).To(q.Span)
 	}
-	if g.Unit.Value != "" {
-		u := p.unit(g.Unit)
+	if g.unit.Value != "" {
+		u := UnitRef{g.unit.Value, l.span(&g.unit)}
 		q.Unit = &u
 		q.Span = q.Span.To(u.Span)
 	}
 	return q
 }
 
-func (p *parser) path(g *gPath) Path {
-	var out Path
-	for i, s := range g.Steps {
-		step := Step{Name: p.name(s.Name)}
+func (l *lowering) optionalQuantity(g *gQuantity) *Quantity {
+	if g == nil {
+		return nil
+	}
+	q := l.quantity(g)
+	return &q
+}
+
+func (l *lowering) unitRef(g *gUnitRef) UnitRef {
+	span := l.span(&g.first).To(l.span(&g.last))
+	return UnitRef{string(l.src.Text[span.Start:span.End]), span}
+}
+
+func (l *lowering) path(g *gPath) Path {
+	out := Path{Steps: make([]Step, len(g.steps))}
+	for i := range g.steps {
+		s := &g.steps[i]
+		step := Step{Name: l.name(&s.name)}
 		span := step.Name.Span
-		if s.Key.Value != "" {
-			step.Key = &Key{Text: s.Key.Value, Number: s.Key.Type == tokNumber, Span: p.tokenSpan(&s.Key)}
-			span = span.To(step.Key.Span)
-			span.End++ // the bracket
+		if s.key.Value != "" {
+			step.Key = &Key{Text: s.key.Value, Number: s.key.Type == tokNumber, Span: l.span(&s.key)}
+			span = span.To(l.span(&s.close))
 		}
 		if i == 0 {
 			out.Span = span
 		}
 		out.Span = out.Span.To(span)
-		out.Steps = append(out.Steps, step)
+		out.Steps[i] = step
 	}
 	return out
 }
 
-func (p *parser) spans(at piece, name token) Spans {
-	return Spans{HeadSpan: p.tokenSpan(&p.tokens[at.from]).To(p.tokenSpan(&name)), WholeSpan: p.pieceSpan(at)}
-}
-
-func (p *parser) raw(g *gRaw) Raw {
-	if g.Ones.Value == "" {
-		n := p.number(g.Value)
+func (l *lowering) raw(g *gRaw) Raw {
+	if g.ones.Value == "" {
+		n := l.number(&g.number)
 		return Raw{Number: &n, Span: n.Span}
 	}
-	r := Raw{Ones: true, Number: p.optionalNumber(g.Less), Span: p.tokenSpan(&g.Ones)}
+	r := Raw{Ones: true, Number: l.optionalNumber(&g.less), Span: l.span(&g.ones)}
 	if r.Number != nil {
 		r.Span = r.Span.To(r.Number.Span)
 	}
 	return r
 }
 
-func (p *parser) rawRange(g *gRawRange) RawRange {
-	r := RawRange{Low: p.raw(&g.Low)}
+func (l *lowering) raws(g *gRaws) RawRange {
+	r := RawRange{Low: l.raw(&g.low)}
 	r.Span = r.Low.Span
-	if g.High != nil {
-		h := p.raw(g.High)
+	if g.ranged {
+		h := l.raw(&g.high)
 		r.High = &h
 		r.Span = r.Span.To(h.Span)
 	}
 	return r
 }
 
-func (p *parser) entry(g *gEntry) *Entry {
-	e := &Entry{Raws: p.rawRange(&g.Raws), Text: p.texts(g.Texts)}
-	e.Span = e.Raws.Span.To(p.tokenSpan(&g.First))
+func (l *lowering) entry(g *gEntry) *Entry {
+	e := &Entry{Raws: l.raws(&g.Raws), Text: l.texts(g.Text)}
+	e.Span = e.Raws.Span.To(l.span(&g.First))
 	switch g.First.Value {
 	case "absent", "fault", "reserved":
-		e.Class = p.name(g.First)
+		e.Class = l.name(&g.First)
 		if g.Name.Value != "" {
-			e.Name = p.name(g.Name)
+			e.Name = l.name(&g.Name)
 			e.Span = e.Span.To(e.Name.Span)
 		}
 	default:
-		e.Name = p.name(g.First)
+		e.Name = l.name(&g.First)
 		if g.Name.Value != "" {
-			p.problems.Report(diag.UnexpectedWord, p.tokenSpan(&g.Name), "a state has one word, and this is a second one", "join them by _, or put a text in quotes behind the state")
+			l.problems.Report(diag.UnexpectedWord, l.span(&g.Name), fmt.Sprintf("%s is a second word, and a state has one", g.Name.Value),
+				"join the words by _, or put a text in quotes behind the first")
 		}
 	}
 	if e.Text.Given {
@@ -174,36 +191,36 @@ func (p *parser) entry(g *gEntry) *Entry {
 	return e
 }
 
-func (p *parser) id(g *gID) IDRef {
-	if g.Form == nil {
-		n := p.number(g.Number)
-		return IDRef{Number: &n, Span: n.Span}
+func (l *lowering) entries(g []*gEntry) []*Entry {
+	var out []*Entry
+	for _, e := range g {
+		out = append(out, l.entry(e))
 	}
-	path := p.path(g.Form)
-	id := IDRef{Form: &path, Span: path.Span}
-	for _, f := range g.Fields {
-		v := &IDFieldValue{Name: p.name(f.Name), Usually: f.Usually.Value != "", Value: p.number(f.Value)}
-		id.Fields = append(id.Fields, v)
-		id.Span = id.Span.To(v.Value.Span)
-	}
-	return id
+	return out
 }
 
-func (p *parser) runs(runs []*gRun) []PlaceRun {
-	var out []PlaceRun
-	for _, g := range runs {
-		r := PlaceRun{Relative: g.Plus.Value != "", Heavy: p.bit(g.Heavy), End: g.End.Value != ""}
+func (l *lowering) point(g *gPoint) *CurvePoint {
+	p := &CurvePoint{X: l.quantity(&g.X.gQuantity), Y: l.quantity(&g.Y.gQuantity)}
+	p.Span = p.X.Span.To(p.Y.Span)
+	return p
+}
+
+func (l *lowering) runs(runs []gRun) []PlaceRun {
+	out := make([]PlaceRun, 0, len(runs))
+	for i := range runs {
+		g := &runs[i]
+		r := PlaceRun{Relative: g.plus.Value != "", Heavy: l.bit(&g.heavy), End: g.end.Value != ""}
 		r.Span = r.Heavy.Span
 		if r.Relative {
-			r.Span = p.tokenSpan(&g.Plus).To(r.Span)
+			r.Span = l.span(&g.plus).To(r.Span)
 		}
-		if g.Light.Value != "" {
-			l := p.bit(g.Light)
-			r.Light = &l
-			r.Span = r.Span.To(l.Span)
+		if g.light.Value != "" {
+			b := l.bit(&g.light)
+			r.Light = &b
+			r.Span = r.Span.To(b.Span)
 		}
 		if r.End {
-			r.Span = r.Span.To(p.tokenSpan(&g.End))
+			r.Span = r.Span.To(l.span(&g.end))
 		}
 		out = append(out, r)
 	}
@@ -211,13 +228,14 @@ func (p *parser) runs(runs []*gRun) []PlaceRun {
 }
 
 // bit reads byte.bit; what has another form is told here.
-func (p *parser) bit(t token) BitRef {
-	out := BitRef{Span: p.tokenSpan(&t)}
+func (l *lowering) bit(t *token) BitRef {
+	out := BitRef{Span: l.span(t)}
 	whole, bit, ok := strings.Cut(t.Value, ".")
 	b, err1 := strconv.ParseUint(whole, 10, 16)
 	i, err2 := strconv.ParseUint(bit, 10, 16)
 	if !ok || err1 != nil || err2 != nil {
-		p.problems.Report(diag.BadPlace, out.Span, clip(t.Value)+" is no position: it is written byte.bit", "write a place such as 0.7..1.0, from the heaviest bit to the lightest")
+		l.problems.Report(diag.BadPlace, out.Span, clip(t.Value)+" is no position: it is written byte.bit",
+			"write a place such as 0.7..1.0, from the heaviest bit to the lightest")
 		out.Bad = true
 		return out
 	}
@@ -225,167 +243,80 @@ func (p *parser) bit(t token) BitRef {
 	return out
 }
 
-func (p *parser) table(g *gTable) *TableClause {
-	t := &TableClause{States: g.Word.Value == "states", Span: p.tokenSpan(&g.Word)}
-	if g.Path != nil {
-		path := p.path(g.Path)
-		t.Path = &path
-		t.Span = t.Span.To(path.Span)
-		return t
+func (l *lowering) id(g *gID) IDRef {
+	if g.Form == nil {
+		n := l.number(&g.Number)
+		return IDRef{Number: &n, Span: n.Span}
 	}
-	for _, e := range g.Entries {
-		t.Entries = append(t.Entries, p.entry(e))
-		t.Span = t.Span.To(t.Entries[len(t.Entries)-1].Span)
+	path := l.path(g.Form)
+	id := IDRef{Form: &path, Span: path.Span}
+	for _, f := range g.Fields {
+		v := &IDFieldValue{Name: l.name(&f.Name), Usually: f.Usually.Value != "", Value: l.number(&f.Value)}
+		id.Fields = append(id.Fields, v)
+		id.Span = id.Span.To(v.Value.Span)
 	}
-	return t
-}
-
-func (p *parser) initial(g *gInitial) *InitialClause {
-	i := &InitialClause{Span: p.tokenSpan(&g.Word)}
-	if g.Value != nil {
-		q := p.quantity(g.Value)
-		i.Quantity = &q
-		i.Span = i.Span.To(q.Span)
-		return i
+	if g.Close.Value != "" {
+		id.Span = id.Span.To(l.span(&g.Close))
 	}
-	n := p.name(g.Name)
-	i.Name = &n
-	i.Span = i.Span.To(n.Span)
-	return i
-}
-
-func (p *parser) kind(g *gKind) *KindClause {
-	switch {
-	case g.Simple.Value != "":
-		return &KindClause{Word: g.Simple.Value, Span: p.tokenSpan(&g.Simple)}
-	case g.Sign.Value != "":
-		return &KindClause{Word: "sign magnitude", Span: p.tokenSpan(&g.Sign)}
-	case g.Packed.Value != "":
-		return &KindClause{Word: "packed decimal", Span: p.tokenSpan(&g.Packed)}
-	case g.Text.Value != "":
-		return &KindClause{Word: "text", Span: p.tokenSpan(&g.Text), Encoding: g.Encoding.Value, Fill: p.optionalNumber(g.Fill)}
-	case g.AlwaysAt.Value != "":
-		n := p.number(g.Always)
-		return &KindClause{Word: "always", Span: p.tokenSpan(&g.AlwaysAt).To(n.Span), Always: &n}
-	case g.Counter != nil:
-		c := g.Counter
-		k := &KindClause{Word: "counter", Low: p.optionalNumber(c.Low), High: p.optionalNumber(c.High), Step: p.optionalNumber(c.Step),
-			AllowLost: p.optionalNumber(c.Lost), AllowRepeated: p.optionalNumber(c.Repeated)}
-		k.Span = p.tokenSpan(&c.Word).To(k.High.Span)
-		return k
-	}
-	m := p.method(g.Checksum)
-	return &KindClause{Word: "checksum", Span: m.Span, Method: m}
-}
-
-func (p *parser) method(g *gMethod) *MethodRef {
-	m := &MethodRef{Span: p.tokenSpan(&g.Word)}
-	if g.Name == nil {
-		m.E2E = true
-		m.Profile = p.number(g.Profile)
-		if g.Mode.Value != "" {
-			m.Mode = p.name(g.Mode)
-		}
-		for _, id := range g.IDs {
-			m.IDs = append(m.IDs, p.number(id))
-		}
-		path := p.path(g.Counter)
-		m.Counter = &path
-		m.Span = m.Span.To(path.Span)
-		return m
-	}
-	m.Name = p.path(g.Name)
-	for _, f := range g.Feeds {
-		m.Feeds = append(m.Feeds, p.feed(f))
-		m.Span = m.Span.To(m.Feeds[len(m.Feeds)-1].Span)
-	}
-	return m
-}
-
-func (p *parser) feed(g *gFeed) FeedRef {
-	if g.Const.Value != "" {
-		n := p.number(g.Const)
-		return FeedRef{Const: &n, Span: n.Span}
-	}
-	f := FeedRef{First: p.optionalNumber(g.First), Last: p.optionalNumber(g.Last), End: g.End.Value != ""}
-	f.Span = p.tokenSpan(&g.Word).To(f.First.Span)
-	if f.Last != nil {
-		f.Span = f.Span.To(f.Last.Span)
-	}
-	if f.End {
-		f.Span = f.Span.To(p.tokenSpan(&g.End))
-	}
-	return f
+	return id
 }
 
 // first is the formula's first token.
-func (e *gExpr) first() token {
+func (g *gExpr) first() *token {
 	switch {
-	case e.open.Value != "" && e.path == nil:
-		return e.open
-	case e.left != nil:
-		return e.left.first()
-	case e.op.Value != "":
-		return e.op
-	case e.number.Value != "":
-		return e.number
-	case e.raw.Value != "":
-		return e.raw
+	case g.path != nil:
+		return &g.path.steps[0].name
+	case g.open.Value != "":
+		return &g.open
+	case g.left != nil:
+		return g.left.first()
+	case g.op.Value != "":
+		return &g.op
+	case g.number.Value != "":
+		return &g.number
 	}
-	return e.path.Steps[0].Name
+	return &g.raw
 }
 
-func (p *parser) expr(g *gExpr) Expr {
-	var span diag.Span
-	grow := func(t token) {
-		if t.Value == "" {
-			return
-		}
-		if !span.Known() {
-			span = p.tokenSpan(&t)
-		}
-		span = span.To(p.tokenSpan(&t))
+// last is the formula's last token.
+func (g *gExpr) last() *token {
+	switch {
+	case g.close.Value != "":
+		return &g.close
+	case g.right != nil:
+		return g.right.last()
+	case g.unit.Value != "":
+		return &g.unit
+	case g.number.Value != "":
+		return &g.number
+	case g.raw.Value != "":
+		return &g.raw
 	}
-	if g.path == nil {
-		grow(g.open)
+	if s := &g.path.steps[len(g.path.steps)-1]; s.close.Value != "" {
+		return &s.close
 	}
+	return &g.path.steps[len(g.path.steps)-1].name
+}
+
+func (l *lowering) expr(g *gExpr) Expr {
+	span := l.span(g.first()).To(l.span(g.last()))
 	switch {
 	case g.left != nil:
-		l, r := p.expr(g.left), p.expr(g.right)
-		if !span.Known() {
-			span = l.ExprSpan()
-		}
-		span = span.To(r.ExprSpan())
-		grow(g.close)
-		return &Operation{Op: g.op.Value[0], Left: l, Right: r, Span: span}
+		return &Operation{Op: g.op.Value[0], Left: l.expr(g.left), Right: l.expr(g.right), Span: span}
 	case g.op.Value != "":
-		grow(g.op)
-		o := p.expr(g.right)
-		span = span.To(o.ExprSpan())
-		grow(g.close)
-		return &Negation{Operand: o, Span: span}
+		return &Negation{Operand: l.expr(g.right), Span: span}
 	case g.number.Value != "":
-		grow(g.number)
-		grow(g.unit)
-		l := &Literal{Number: p.number(g.number)}
+		x := &Literal{Number: l.number(&g.number), Span: span}
 		if g.unit.Value != "" {
-			u := p.unit(g.unit)
-			l.Unit = &u
+			x.Unit = &UnitRef{g.unit.Value, l.span(&g.unit)}
 		}
-		grow(g.close)
-		l.Span = span
-		return l
+		return x
 	case g.raw.Value != "":
-		grow(g.raw)
-		grow(g.close)
 		return &RawRef{Span: span}
 	}
-	ref := &Reference{Path: p.path(g.path)}
-	span = ref.Path.Span
+	ref := &Reference{Path: l.path(g.path), Span: span}
 	if g.operand != nil {
-		ref.Operand = p.expr(g.operand)
+		ref.Operand = l.expr(g.operand)
 	}
-	grow(g.close)
-	ref.Span = span
 	return ref
 }

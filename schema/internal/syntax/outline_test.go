@@ -58,10 +58,8 @@ func walk(b *strings.Builder, v reflect.Value) {
 // comments lists the comments of a text, sorted.
 func comments(text string) []string {
 	var out []string
-	for _, t := range scan([]byte(text)) {
-		if t.Type == tokComment {
-			out = append(out, strings.TrimRight(t.Value, " \t\r"))
-		}
+	for _, c := range scan([]byte(text)).comments {
+		out = append(out, text[c.start:c.end])
 	}
 	sort.Strings(out)
 	return out

@@ -1,35 +1,36 @@
 package syntax
 
 import (
-	"errors"
 	"fmt"
-	"regexp"
-	"strings"
+	"math/big"
+	"runtime"
+	"slices"
 	"sync"
-
-	"busloom/diag"
-	"busloom/unit"
 
 	"github.com/alecthomas/participle/v2"
 	"github.com/alecthomas/participle/v2/lexer"
+
+	"busloom/diag"
 )
 
-// mostProblems is how many syntax errors of one file are told.
-const mostProblems = 100
+// LanguageVersion is the version of the language that this program reads.
+const LanguageVersion = 1
 
-// Parse reads a description. Every problem is reported, once; what could be
-// read is in the tree, so that its checks can go on.
+const (
+	// maxProblems is how many syntax errors of one file are told.
+	maxProblems = 100
+	// maxText is the longest text, so that offsets fit into a token.
+	maxText = 1 << 30
+)
+
+// Parse reads a description. Every mistake is reported once, in the order of
+// the text; what could be read is in the tree, which is never nil.
 func Parse(src *diag.File, problems *diag.List) *File {
-	p := &parser{src: src, problems: &diag.List{}, parsers: theParsers()}
-	all := scan(src.Text)
-	p.tokens = make(tokens, 0, len(all))
-	for _, t := range all {
-		if t.Type != tokComment {
-			p.tokens = append(p.tokens, t)
-		}
+	p, ok := newParser(src, problems)
+	if !ok {
+		return &File{Source: src}
 	}
-	p.reportInvalid()
-	f := p.file()
+	f := p.tree()
 	p.handOver(problems)
 	return f
 }
@@ -44,194 +45,231 @@ var theParsers = sync.OnceValue(func() *parsers {
 	return p
 })
 
+// parser is what all pieces of a file share. Nothing in it changes while they
+// are parsed, so that they can be parsed side by side.
 type parser struct {
-	src      *diag.File
-	tokens   tokens
-	problems *diag.List
+	file     *diag.File
+	text     string
+	toks     []tok
+	comments []tok
 	parsers  *parsers
+	found    diag.List // the problems
 }
 
+func newParser(src *diag.File, problems *diag.List) (*parser, bool) {
+	if len(src.Text) > maxText {
+		problems.Report(diag.Unreadable, diag.Span{File: src}, fmt.Sprintf("a description has at most %d bytes, this one has %d", maxText, len(src.Text)), "divide it, and join the parts with use")
+		return nil, false
+	}
+	s := scan(src.Text)
+	p := &parser{file: src, text: string(src.Text), toks: s.toks, comments: s.comments, parsers: theParsers()}
+	p.reportBad(s.bad)
+	p.cutDepth()
+	return p, true
+}
+
+// handOver gives the problems away in the order of the text, up to a limit.
 func (p *parser) handOver(to *diag.List) {
-	sorted := p.problems.Sorted()
+	sorted := p.found.Sorted()
+	var shown diag.List
 	for i, d := range sorted {
-		if i == mostProblems {
-			to.Report(diag.TooManyErrors, d.Span, fmt.Sprintf("%d more problems in this file aren't shown", len(sorted)-i),
+		if i == maxProblems {
+			shown.Report(diag.TooManyErrors, d.Span, fmt.Sprintf("%d more problems in this file aren't shown", len(sorted)-i),
 				"mend the first ones: the others often go with them")
-			// The count of errors must still be right.
-			return
+			break
 		}
-		to.Report(d.Code, d.Span, d.Problem, d.Remedy)
+		*shown.Report(d.Code, d.Span, d.Problem, d.Remedy) = *d
 	}
+	to.Add(&shown)
 }
 
-func (p *parser) span(from, to int) diag.Span {
-	s := diag.Span{File: p.src, Start: from, End: to}
-	return s
+// piece is a stretch of tokens that is parsed by itself.
+type piece struct {
+	toks []tok
+	end  int // offset of what follows
 }
 
-func (p *parser) tokenSpan(t *token) diag.Span {
-	return p.span(t.Pos.Offset, t.Pos.Offset+len(t.Value))
+// reader parses the pieces of one part of a file.
+type reader struct {
+	*parser
+	lowering
 }
 
-// pieceSpan is the span of a piece of tokens.
-func (p *parser) pieceSpan(at piece) diag.Span {
-	if at.from >= at.to || at.from >= len(p.tokens) {
-		return p.span(len(p.src.Text), len(p.src.Text))
-	}
-	return p.tokenSpan(&p.tokens[at.from]).To(p.tokenSpan(&p.tokens[at.to-1]))
+func (p *parser) reader(problems *diag.List) *reader {
+	return &reader{parser: p, lowering: lowering{src: p.file, problems: problems, numbers: map[string]*big.Rat{}}}
 }
 
-// reportInvalid tells what the lexer couldn't read, and numbers that aren't.
-func (p *parser) reportInvalid() {
-	for i := range p.tokens {
-		t := &p.tokens[i]
-		switch {
-		case t.Type == tokInvalid && t.Value[0] == '"':
-			p.problems.Report(diag.UnclosedText, p.tokenSpan(t), "this text has no closing quote on its line",
-				`close it with ", and go on in a second text on the next line if it is long`)
-		case t.Type == tokInvalid:
-			what := "these bytes are"
-			if len([]rune(t.Value)) == 1 {
-				what = "this sign is"
-			}
-			p.problems.Report(diag.Unreadable, p.tokenSpan(t), what+" no part of the language",
-				"remove it; texts go in quotes, comments begin with //")
-		case t.Type == tokNumber:
-			if _, err := unit.ParseNumber(t.Value); err != nil {
-				p.problems.Report(diag.BadNumber, p.tokenSpan(t), "this can't be read as a number: "+err.Error(),
-					"write it as 12, 0.25, 1e-3, 0x1F, 0b101 or 100/255, with a blank between a number and a word")
-				t.Type = tokInvalid
-			}
-		}
-	}
+func (r *reader) report(code diag.Code, span diag.Span, problem, remedy string) *diag.Diagnostic {
+	return r.problems.Report(code, span, problem, remedy)
 }
 
-// hasInvalid reports whether a piece has a token that was reported already.
-func (p *parser) hasInvalid(at piece) bool {
-	for i := at.from; i < at.to; i++ {
-		if p.tokens[i].Type == tokInvalid {
-			return true
-		}
-	}
-	return false
+func (r *reader) tokSpan(t tok) diag.Span {
+	return diag.Span{File: r.src, Start: int(t.start), End: int(t.end)}
 }
 
-// parsePiece runs one production over one piece and tells what is wrong.
-func parsePiece[T any](p *parser, with *participle.Parser[T], at piece) (*T, bool) {
-	if p.hasInvalid(at) {
-		return nil, false
-	}
-	end := lexer.Position{Offset: len(p.src.Text)}
-	if at.to < len(p.tokens) {
-		end = p.tokens[at.to].Pos
-	}
-	peeking, err := lexer.Upgrade(&sliceLexer{tokens: p.tokens[at.from:at.to], end: end})
+func (r *reader) tokText(t tok) string { return r.text[t.start:t.end] }
+
+func (r *reader) spanOf(p piece) diag.Span {
+	return r.tokSpan(p.toks[0]).To(r.tokSpan(p.toks[len(p.toks)-1]))
+}
+
+// parse runs one production over one piece.
+func parse[T any](r *reader, with *participle.Parser[T], p piece) (*T, error) {
+	peeking, err := lexer.Upgrade(&sliceLexer{text: r.text, toks: p.toks, end: p.end})
 	if err != nil {
-		p.syntaxError(at, err)
-		return nil, false
+		return nil, err
 	}
-	got, err := with.ParseFromLexer(peeking)
+	return with.ParseFromLexer(peeking)
+}
+
+// tree reads the whole file: the version, then the declarations.
+func (p *parser) tree() *File {
+	f := &File{Source: p.file}
+	r := p.reader(&p.found)
+	rest := r.version(f)
+	pieces := p.cut(rest)
+	pieces = r.header(f, pieces)
+	f.Decls = p.decls(pieces)
+	return f
+}
+
+// version reads the first line and returns the index of what follows it.
+func (r *reader) version(f *File) int {
+	write := fmt.Sprintf("write busloom %d as the first line", LanguageVersion)
+	if len(r.toks) == 0 {
+		r.report(diag.MissingVersion, diag.Span{File: r.src}, "the file is empty, and a description begins with its language version", write)
+		return 0
+	}
+	first := r.toks[0]
+	if !first.is(tokWord) || r.tokText(first) != "busloom" {
+		if !first.is(tokInvalid) {
+			r.report(diag.MissingVersion, r.tokSpan(first), "a description begins with its language version", write)
+		}
+		return 0
+	}
+	to := 1
+	if len(r.toks) > 1 && (r.toks[1].is(tokNumber) || r.toks[1].is(tokInvalid)) {
+		to = 2
+	}
+	if to == 2 && r.toks[1].is(tokInvalid) {
+		return to
+	}
+	g, err := parse(r, r.parsers.version, piece{r.toks[:to], len(r.text)})
 	if err != nil {
-		p.syntaxError(at, err)
-		return nil, false
+		r.report(diag.MissingVersion, r.tokSpan(first), "the number of the language version is missing behind busloom", write)
+		return to
 	}
-	return got, true
+	f.Version = r.number(&g.Number)
+	if f.Version.Value.Cmp(big.NewRat(LanguageVersion, 1)) != 0 {
+		r.report(diag.UnknownVersion, f.Version.Span, fmt.Sprintf("this program knows version %d of the language, not %s", LanguageVersion, clip(f.Version.Raw)),
+			"use a Busloom that knows it, or write the file in the version that this one knows")
+	}
+	return to
 }
 
-// expectation finds the first thing that the library says was expected.
-var expectation = regexp.MustCompile(`\(expected ("[^"]+"|<[a-z]+>|[A-Z]\w*)`)
-
-// inWords translates what the library calls a token or a production.
-var inWords = map[string]string{
-	"<word>": "a name", "<number>": "a number", "<string>": "a text in quotes", "<unit>": "a unit", "<punct>": "a sign",
-	"GQuantity": "a number", "GPath": "a name", "GRun": "a place such as 0.7..1.0", "GRaw": "a raw value: a number or ones",
-	"GRawRange": "a raw value: a number or ones", "GExpr": "a formula", "GEntry": "a raw value, a colon and a word",
-	"GChoice": "a raw value or a state", "GID": "an identifier", "GFeed": "a number, byte or bytes", "GStep": "a name",
-	"GClause": "a clause", "GIDField": "a field of the id form", "GIDFormField": "a field and its width",
-	"GWait": "at least ... apart, or lost after ...", "GMethod": "a checksum method", "GTable": "a table",
+// header reads network and use, and returns the other pieces.
+func (r *reader) header(f *File, pieces []piece) []piece {
+	rest := pieces[:0:0]
+	for _, at := range pieces {
+		word := r.firstWord(at)
+		if word != "network" && word != "use" {
+			rest = append(rest, at)
+			continue
+		}
+		if len(rest) > 0 {
+			r.report(diag.UnexpectedWord, r.tokSpan(at.toks[0]), word+" stands behind a declaration", "move it up: network and use come before all declarations")
+		}
+		at, stray := r.splitStray(at, func(p piece) error {
+			var err error
+			if word == "network" {
+				_, err = parse(r, r.parsers.network, p)
+			} else {
+				_, err = parse(r, r.parsers.use, p)
+			}
+			return err
+		})
+		if word == "use" {
+			if g, err := parse(r, r.parsers.use, at); err == nil {
+				f.Uses = append(f.Uses, r.use(g, r.spanOf(at)))
+			} else {
+				r.tell(at, err, word)
+			}
+		} else if g, err := parse(r, r.parsers.network, at); err != nil {
+			r.tell(at, err, word)
+		} else if n := r.network(g, r.spanOf(at)); f.Network == nil {
+			f.Network = n
+		} else {
+			r.report(diag.RepeatedClause, n.Span, "the network is named a second time", "keep one of the two").Also(f.Network.Span, "the first time")
+		}
+		if len(stray.toks) > 0 {
+			rest = append(rest, stray)
+		}
+	}
+	return rest
 }
 
-func (p *parser) syntaxError(at piece, err error) {
-	var deep *deepError
-	if errors.As(err, &deep) {
-		p.problems.Report(diag.NestedTooDeep, p.tokenSpan(&deep.at), deep.Message(), "split the formula with constants, or remove parentheses")
-		return
+// decls parses declarations, side by side if there are many. The result does
+// not depend on how many are parsed at once.
+func (p *parser) decls(pieces []piece) []Decl {
+	const share = 64 // pieces of one batch
+	batches := (len(pieces) + share - 1) / share
+	out := make([][]Decl, batches)
+	lists := make([]diag.List, batches)
+	work := make(chan int, batches)
+	for b := range batches {
+		work <- b
 	}
-	var stroke *gluedError
-	if errors.As(err, &stroke) {
-		p.problems.Report(diag.UnitNeedsOwnLine, p.tokenSpan(&stroke.at), "a stroke without blanks belongs to a unit or a fraction, and here is neither",
-			"put blanks around / to divide")
-		return
-	}
-	var pe participle.Error
-	offset := p.pieceSpan(at).End
-	want := ""
-	if errors.As(err, &pe) {
-		offset = pe.Position().Offset
-		var own *expectedError
-		if errors.As(err, &own) {
-			want = own.want
-		} else if m := expectation.FindStringSubmatch(pe.Message()); m != nil {
-			want = inWords[m[1]]
-			if strings.HasPrefix(m[1], `"`) {
-				want = "the word " + strings.Trim(m[1], `"`)
-				if len(strings.Trim(m[1], `"`)) <= 2 && !isLetter(m[1][1]) {
-					want = strings.Trim(m[1], `"`)
+	close(work)
+	var wait sync.WaitGroup
+	for range min(runtime.GOMAXPROCS(0), batches) {
+		wait.Go(func() {
+			numbers := map[string]*big.Rat{}
+			for b := range work {
+				r := p.reader(&lists[b])
+				r.numbers = numbers
+				for i := b * share; i < min((b+1)*share, len(pieces)); i++ {
+					out[b] = r.declaration(out[b], pieces[i])
 				}
 			}
-		}
+		})
 	}
-	p.unexpected(at, offset, want)
+	wait.Wait()
+	for b := range lists {
+		p.found.Add(&lists[b])
+	}
+	return slices.Concat(out...)
 }
 
-// unexpected tells what stands at an offset and what was expected there.
-func (p *parser) unexpected(at piece, offset int, want string) {
-	i := at.from
-	for i < at.to && p.tokens[i].Pos.Offset < offset {
-		i++
+// declaration reads one piece: whole if it can, else what is good of it.
+func (r *reader) declaration(out []Decl, at piece) []Decl {
+	word := r.firstWord(at)
+	if !declWords[word] {
+		r.stray(at)
+		return out
 	}
-	if i >= at.to {
-		span := p.pieceSpan(at)
-		span.Start = max(span.Start, span.End-1)
-		last := p.tokens[at.to-1].Value
-		if want == "" {
-			want = "more"
-		}
-		p.problems.Report(diag.UnexpectedWord, span, fmt.Sprintf("after %s something is missing: expected %s", clip(last), want), "complete it; docs/language.md has the form")
-		return
+	g, err := parse(r, r.parsers.decl, at)
+	if err == nil {
+		return append(out, r.decl(g, r.spanOf(at)))
 	}
-	t := &p.tokens[i]
-	problem := fmt.Sprintf("%s can't stand here", clip(t.Value))
-	if want != "" {
-		problem += ": expected " + want
+	switch word {
+	case "bus", "ecu", "unit", "const":
+		return r.mendLine(out, at, err)
 	}
-	remedy := "remove it, or see docs/language.md for what can stand here"
-	if t.Type == tokWord || t.Type == tokUnit {
-		if near := diag.Nearest(t.Value, knownWords(want)); near != "" && near != t.Value {
-			remedy = "did you mean " + near + "?"
-		}
+	before := r.problems.Len()
+	d := r.mend(at, err)
+	if r.problems.Len() == before {
+		// The parts are good and the whole isn't: tell of the whole.
+		r.tell(at, err, word)
 	}
-	p.problems.Report(diag.UnexpectedWord, p.tokenSpan(t), problem, remedy)
-}
-
-func glued(a, b *token) bool { return a.Pos.Offset+len(a.Value) == b.Pos.Offset }
-
-func clip(text string) string {
-	if len(text) > 40 {
-		text = text[:40] + "…"
-	}
-	return text
-}
-
-func knownWords(want string) []string {
-	if strings.HasPrefix(want, "the word ") {
-		return []string{strings.TrimPrefix(want, "the word ")}
-	}
-	var out []string
-	for _, set := range []map[string]bool{declWords, factWords, clauseWords} {
-		for w := range set {
-			out = append(out, w)
-		}
+	if d != nil {
+		out = append(out, d)
 	}
 	return out
+}
+
+func (r *reader) firstWord(at piece) string {
+	if len(at.toks) > 0 && at.toks[0].is(tokWord) {
+		return r.tokText(at.toks[0])
+	}
+	return ""
 }
