@@ -107,7 +107,7 @@ func (b *builder) build() error {
 		return err
 	}
 	b.idFields()
-	b.message.Wanted = len(b.message.Signals) > 0 || len(b.only) == 0 || (len(m.Signals) == 0 && b.only.wants(m.Name, ""))
+	b.message.Wanted = len(b.message.Signals) > 0 || len(b.only) == 0 || (len(m.Signals) == 0 && b.only.wants(m, ""))
 	return nil
 }
 
@@ -123,7 +123,7 @@ func (b *builder) steps(signals []*schema.Signal, selects []*schema.Select, inde
 			out = append(out, st)
 			selects = selects[1:]
 		}
-		if !b.only.wants(b.message.Model.Name, s.Name) {
+		if !b.only.wants(b.message.Model, s.Name) {
 			continue
 		}
 		st, err := b.signalStep(s)
@@ -331,7 +331,7 @@ func (b *builder) setOp(st *step, s *Signal) {
 func (b *builder) idFields() {
 	for _, f := range b.message.Model.ID.Fields {
 		name := "id." + f.Name
-		if !f.Open || !b.only.wants(b.message.Model.Name, name) {
+		if !f.Open || !b.only.wants(b.message.Model, name) {
 			continue
 		}
 		s := &Signal{Path: name, kind: schema.Unsigned, width: f.Width, idShift: f.Shift}

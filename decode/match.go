@@ -10,11 +10,12 @@ import (
 // A pattern chooses messages and signals: "Wheel*" is every signal of the
 // messages that match; "Wheel*.*speed" are the signals whose path in the
 // message matches. * stands for any characters, ? for one; a pattern without
-// a dot is about messages.
+// a dot is about messages. " on bus" behind it keeps to one bus, as in
+// "RoadSpeed.speed on chassis".
 type pattern struct {
-	text            string
-	message, signal string
-	used            bool
+	text                 string
+	message, signal, bus string
+	used                 bool
 }
 
 type patterns []*pattern
@@ -22,23 +23,27 @@ type patterns []*pattern
 func parsePatterns(texts []string) (patterns, error) {
 	var out patterns
 	for _, text := range texts {
-		message, signal, dotted := strings.Cut(text, ".")
+		path, bus, onBus := strings.Cut(text, " on ")
+		if !onBus {
+			bus = "*"
+		}
+		message, signal, dotted := strings.Cut(path, ".")
 		if message == "" || (dotted && signal == "") {
 			return nil, fmt.Errorf("the pattern %q is empty: write Message, Message.signal or *.signal", text)
 		}
 		if !dotted {
 			signal = "*"
 		}
-		out = append(out, &pattern{text: text, message: message, signal: signal})
+		out = append(out, &pattern{text: text, message: message, signal: signal, bus: bus})
 	}
 	return out, nil
 }
 
 // wants reports whether a signal is wanted; without patterns all are.
-func (ps patterns) wants(message, signal string) bool {
+func (ps patterns) wants(m *schema.Message, signal string) bool {
 	wanted := len(ps) == 0
 	for _, p := range ps {
-		if glob(p.message, message) && glob(p.signal, signal) {
+		if glob(p.message, m.Name) && glob(p.signal, signal) && glob(p.bus, m.Bus.Name) {
 			p.used = true
 			wanted = true
 		}
@@ -51,6 +56,9 @@ func (ps patterns) unused(network *schema.Network) error {
 	for _, p := range ps {
 		if p.used {
 			continue
+		}
+		if !hasBus(network, p.bus) {
+			return fmt.Errorf("nothing matches %s: there is no bus %s", p.text, p.bus)
 		}
 		var messages, signals []string
 		for _, m := range network.Messages {
@@ -67,6 +75,15 @@ func (ps patterns) unused(network *schema.Network) error {
 		return fmt.Errorf("nothing matches %s%s", p.text, didYouMean(p.signal, signals))
 	}
 	return nil
+}
+
+func hasBus(network *schema.Network, pattern string) bool {
+	for _, b := range network.Buses {
+		if glob(pattern, b.Name) {
+			return true
+		}
+	}
+	return false
 }
 
 // glob matches * and ?, in time linear in the text for each star.

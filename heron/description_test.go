@@ -3,6 +3,9 @@ package heron_test
 import (
 	"bytes"
 	"fmt"
+	"io/fs"
+	"os"
+	"path/filepath"
 	"strconv"
 	"strings"
 	"testing"
@@ -20,10 +23,28 @@ func description(t *testing.T) *schema.Network {
 	t.Helper()
 	net, problems := schema.Compile(schema.DiskFiles(), "../schemas/heron.bus")
 	var text bytes.Buffer
-	require.NoError(t, diag.Render(&text, problems.Sorted(), diag.Style{}))
+	require.NoError(t, diag.Render(&text, problems.Sorted(), diag.Style{Notes: true}))
 	require.Empty(t, text.String(), "the description has nothing to complain about, not even notes")
 	require.NotNil(t, net)
 	return net
+}
+
+// The description is laid out as the language's formatter does it.
+func TestDescriptionIsFormatted(t *testing.T) {
+	count := 0
+	require.NoError(t, filepath.WalkDir("../schemas", func(path string, entry fs.DirEntry, err error) error {
+		if err != nil || filepath.Ext(path) != ".bus" {
+			return err
+		}
+		text, err := os.ReadFile(path)
+		require.NoError(t, err)
+		formatted, ok := schema.Format(diag.NewFile(path, text), &diag.List{})
+		require.True(t, ok, path)
+		require.Equal(t, string(formatted), string(text))
+		count++
+		return nil
+	}))
+	require.Greater(t, count, 10)
 }
 
 // The van is big enough to be taken seriously, and has every kind of sensor

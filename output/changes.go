@@ -49,7 +49,7 @@ func (c *changes) Record(dst []byte, r *decode.Record) []byte {
 	}
 	c.record = *r
 	c.record.Values = values
-	if len(values) == 0 && len(appendCheck(nil, r)) == 0 {
+	if len(values) == 0 && !wrong(r) {
 		return dst
 	}
 	return c.to.Record(dst, &c.record)

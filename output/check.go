@@ -6,36 +6,48 @@ import (
 	"busloom/decode"
 )
 
+// wrong reports whether appendCheck has anything to say.
+func wrong(r *decode.Record) bool {
+	return r.Checksum == decode.Bad || r.Counter == decode.Bad || r.Counter == decode.Repeated || r.Counter == decode.Lost ||
+		r.Fit != decode.FitExact || r.UnknownSelection
+}
+
 // appendCheck appends what is wrong with a record's protection or length, in
-// words joined by a semicolon and a blank; nothing if all is well.
-func appendCheck(dst []byte, r *decode.Record) []byte {
-	start := len(dst)
-	say := func(text string) {
-		if len(dst) > start {
-			dst = append(dst, "; "...)
-		}
-		dst = append(dst, text...)
+// phrases joined by between; nothing if all is well.
+func appendCheck(dst []byte, r *decode.Record, between string) []byte {
+	if !wrong(r) {
+		return dst
 	}
+	start := len(dst)
 	if r.Checksum == decode.Bad {
-		say("checksum wrong")
+		dst = append(dst, "checksum wrong"...)
+	}
+	gap := func(dst []byte) []byte {
+		if len(dst) > start {
+			dst = append(dst, between...)
+		}
+		return dst
 	}
 	switch r.Counter {
 	case decode.Bad:
-		say("counter out of range")
+		dst = append(gap(dst), "counter out of range"...)
 	case decode.Repeated:
-		say("counter repeated")
+		dst = append(gap(dst), "counter repeated"...)
 	case decode.Lost:
-		say("counter lost ")
+		dst = append(gap(dst), "counter lost "...)
 		dst = strconv.AppendUint(dst, r.Steps, 10)
 	}
 	switch r.Fit {
 	case decode.FitShort:
-		say("frame short")
+		dst = append(gap(dst), "frame short"...)
 	case decode.FitLong:
-		say("frame long")
+		dst = append(gap(dst), "frame long"...)
 	}
 	if r.UnknownSelection {
-		say("unknown selection")
+		dst = append(gap(dst), "unknown selection"...)
 	}
 	return dst
 }
+
+// phrases joins what is wrong in CSV and in the table.
+const phrases = "; "

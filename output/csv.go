@@ -1,6 +1,7 @@
 package output
 
 import (
+	"slices"
 	"strings"
 
 	"busloom/decode"
@@ -8,39 +9,53 @@ import (
 
 // csvWriter writes a row for each value: time, bus, message, signal, value,
 // unit, word, code, check. Everything that is the same in each row of a signal
-// is prepared.
+// is prepared, so that a row is four copies and a number.
 type csvWriter struct {
-	clock clock
+	plan  *decode.Plan
 	rows  []csvRow // by Signal.Index
-	time  []byte
+	clock clock
+	time  [chunk]byte
 	check []byte
 }
 
-// csvRow is what a signal's rows are made of. A row is time, head, number and
-// numberTail, or time and one of the others.
+// csvRow is what a signal's rows are made of, without the time: head, number
+// and tail, or one of the words or codes. All of them are fields with their
+// commas and end where the check begins.
 type csvRow struct {
-	head   []byte   // ,bus,message,signal,
-	number []byte   // ,unit,,, behind the number
-	words  [][]byte // head and all that follows, by word; without check
-	codes  [][]byte // by code
+	head  [2 * chunk]byte // ,bus,message,signal,
+	tail  [chunk]byte     // ,unit,,, and the line's end
+	heads uint8           // length of head; 0 if head or tail is too long for it
+	tails uint8
+	words [][]byte // by word
+	codes [][]byte // by code
+	long  struct{ head, unit string }
 }
+
+// chunk is what is copied at once: a copy of constant length needs no call,
+// and what is too much is overwritten by what follows.
+const chunk = 32
+
+// roomForRow is more than a row of short parts and a number needs.
+const roomForRow = 8 * chunk
 
 const csvEnd = "\r\n"
 
 func newCSV(plan *decode.Plan) *csvWriter {
-	w := &csvWriter{rows: make([]csvRow, len(plan.Signals))}
+	w := &csvWriter{plan: plan, rows: make([]csvRow, len(plan.Signals))}
 	for i, s := range plan.Signals {
 		row := &w.rows[i]
 		head := "," + csvField(s.Message.Bus) + "," + csvField(s.Message.Model.Name) + "," + csvField(s.Path) + ","
 		unit := csvField(s.Unit.Symbol)
-		row.head = []byte(head)
-		row.number = []byte("," + unit + ",,,")
+		row.long.head, row.long.unit = head, unit
+		if tail := "," + unit + ",,," + csvEnd; len(head) <= len(row.head) && len(tail) <= len(row.tail) {
+			row.heads, row.tails = uint8(copy(row.head[:], head)), uint8(copy(row.tail[:], tail))
+		}
 		for _, word := range s.Words {
-			row.words = append(row.words, []byte(head+",,"+csvField(word)+",,"))
+			row.words = append(row.words, []byte(head+",,"+csvField(word)+",,"+csvEnd))
 		}
 		if s.Model != nil {
 			for _, c := range s.Model.Codes {
-				row.codes = append(row.codes, []byte(head+","+unit+",,"+csvField(decode.CodeWord(c))+","))
+				row.codes = append(row.codes, []byte(head+","+unit+",,"+csvField(decode.CodeWord(c))+","+csvEnd))
 			}
 		}
 	}
@@ -55,6 +70,9 @@ func csvField(text string) string {
 	return `"` + strings.ReplaceAll(text, `"`, `""`) + `"`
 }
 
+// Fork implements Forker: the rows are shared.
+func (w *csvWriter) Fork() Formatter { return &csvWriter{plan: w.plan, rows: w.rows} }
+
 func (w *csvWriter) Header(dst []byte) []byte {
 	return append(dst, "time,bus,message,signal,value,unit,word,code,check"+csvEnd...)
 }
@@ -65,40 +83,89 @@ func (w *csvWriter) Record(dst []byte, r *decode.Record) []byte {
 	if len(r.Values) == 0 {
 		return dst
 	}
-	w.time = w.clock.append(w.time[:0], r.Frame.Time)
-	w.check = append(appendCheck(w.check[:0], r), csvEnd...)
+	times := len(w.clock.append(w.time[:0], r.Frame.Time))
+	w.check = appendCheck(w.check[:0], r, phrases)
 	for i := range r.Values {
 		v := &r.Values[i]
 		row := &w.rows[v.Signal.Index]
-		dst = append(dst, w.time...)
-		switch v.State {
-		case decode.Number:
-			dst = append(dst, row.head...)
-			dst = v.Signal.AppendNumber(dst, v)
-			dst = append(dst, row.number...)
-		case decode.Word:
-			dst = append(dst, row.words[v.Index]...)
-		case decode.Coded:
-			dst = append(dst, row.codes[v.Index]...)
-		case decode.Text, decode.Octets:
-			dst = append(append(dst, row.head...), ",,"...)
-			start := len(dst)
-			dst = v.Signal.AppendText(dst, v, r.Frame)
-			dst = append(quoteTail(dst, start), ",,"...)
-		default:
-			dst = append(append(dst, row.head...), ",,,"...)
-			dst = append(v.Signal.AppendText(dst, v, r.Frame), ',')
+		if cap(dst)-len(dst) < roomForRow {
+			dst = slices.Grow(dst, len(r.Values)*roomForRow)
 		}
-		dst = append(dst, w.check...)
+		n := len(dst)
+		room := dst[n : n+3*chunk]
+		*(*[chunk]byte)(room) = w.time
+		if v.State == decode.Number && row.heads > 0 {
+			*(*[2 * chunk]byte)(room[times:]) = row.head
+			dst = v.Signal.AppendNumber(dst[:n+times+int(row.heads)], v)
+			if cap(dst)-len(dst) < chunk {
+				dst = slices.Grow(dst, roomForRow)
+			}
+			n = len(dst)
+			*(*[chunk]byte)(dst[n : n+chunk]) = row.tail
+			dst = dst[:n+int(row.tails)]
+		} else {
+			dst = row.appendOther(dst[:n+times], r, v)
+		}
+		if len(w.check) > 0 {
+			dst = append(append(dst[:len(dst)-len(csvEnd)], w.check...), csvEnd...)
+		}
 	}
 	return dst
 }
 
+// appendOther appends the fields of what isn't a number, or is a long row.
+func (row *csvRow) appendOther(dst []byte, r *decode.Record, v *decode.Value) []byte {
+	switch v.State {
+	case decode.Word:
+		return append(dst, row.words[v.Index]...)
+	case decode.Coded:
+		return append(dst, row.codes[v.Index]...)
+	}
+	dst = append(dst, row.long.head...)
+	switch v.State {
+	case decode.Number:
+		dst = append(v.Signal.AppendNumber(dst, v), ',')
+		dst = append(append(dst, row.long.unit...), ",,,"...)
+	case decode.Text, decode.Octets:
+		dst = append(dst, ",,"...)
+		start := len(dst)
+		dst = append(quoteTail(v.Signal.AppendText(dst, v, r.Frame), start), ",,"...)
+	default:
+		dst = append(dst, ',')
+		dst = append(append(dst, row.long.unit...), ",,"...)
+		dst = append(v.Signal.AppendText(dst, v, r.Frame), ',')
+	}
+	return append(dst, csvEnd...)
+}
+
 // quoteTail quotes what was appended from start on, where RFC 4180 wants it.
 func quoteTail(dst []byte, start int) []byte {
-	text := string(dst[start:])
-	if quoted := csvField(text); len(quoted) != len(text) {
-		return append(dst[:start], quoted...)
+	quotes, wanted := 0, false
+	for _, c := range dst[start:] {
+		switch c {
+		case '"':
+			quotes++
+			wanted = true
+		case ',', '\r', '\n':
+			wanted = true
+		}
 	}
+	if !wanted {
+		return dst
+	}
+	// From the back, so that it can be done in place.
+	from := len(dst)
+	dst = slices.Grow(dst, quotes+2)[:from+quotes+2]
+	to := len(dst) - 1
+	dst[to] = '"'
+	for from--; from >= start; from-- {
+		to--
+		dst[to] = dst[from]
+		if dst[from] == '"' {
+			to--
+			dst[to] = '"'
+		}
+	}
+	dst[start] = '"'
 	return dst
 }

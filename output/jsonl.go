@@ -1,9 +1,7 @@
 package output
 
 import (
-	"encoding/json"
 	"fmt"
-	"strconv"
 
 	"busloom/decode"
 	"busloom/frame"
@@ -11,39 +9,58 @@ import (
 
 // jsonLines writes one JSON object for each frame.
 type jsonLines struct {
-	plan  *decode.Plan
-	all   bool
-	heads [][]byte // by Message.Index: ,"bus":...,"message":...
-	names [][]byte // by Signal.Index: {"name":...
-	units [][]byte // by Signal.Index: ,"unit":...}
+	*jsonParts
 	clock clock
 	text  []byte
 }
 
-func newJSONLines(plan *decode.Plan, all bool) *jsonLines {
-	w := &jsonLines{plan: plan, all: all}
-	for _, m := range plan.Messages {
-		w.heads = append(w.heads, []byte(`,"bus":`+jsonText(m.Bus)+`,"message":`+jsonText(m.Model.Name)))
-	}
-	for _, s := range plan.Signals {
-		w.names = append(w.names, []byte(`{"name":`+jsonText(s.Path)))
-		end := "}"
-		if s.Unit.Symbol != "" {
-			end = `,"unit":` + jsonText(s.Unit.Symbol) + "}"
-		}
-		w.units = append(w.units, []byte(end))
-	}
-	return w
+// jsonParts are prepared once.
+type jsonParts struct {
+	plan    *decode.Plan
+	all     bool
+	heads   [][]byte     // by Message.Index: ,"bus":...,"message":...,"signals":[
+	signals []jsonPieces // by Signal.Index
 }
 
-// jsonText quotes a text for JSON.
-func jsonText(text string) string {
-	b, err := json.Marshal(text)
-	if err != nil {
-		return `""` // a string can always be written
-	}
-	return string(b)
+// jsonPieces are what a signal's object is made of, with the comma in front.
+type jsonPieces struct {
+	name  []byte   // ,{"name":"..."
+	unit  []byte   // ,"unit":"..."}
+	words [][]byte // the whole object, by word
+	codes [][]byte // the whole object, by code
 }
+
+func newJSONLines(plan *decode.Plan, all bool) *jsonLines {
+	p := &jsonParts{plan: plan, all: all}
+	for _, m := range plan.Messages {
+		head := appendJSONText([]byte(`,"bus":`), m.Bus)
+		head = appendJSONText(append(head, `,"message":`...), m.Model.Name)
+		p.heads = append(p.heads, append(head, `,"signals":[`...))
+	}
+	for _, s := range plan.Signals {
+		x := jsonPieces{name: appendJSONText([]byte(`,{"name":`), s.Path), unit: []byte("}")}
+		if s.Unit.Symbol != "" {
+			x.unit = append(appendJSONText([]byte(`,"unit":`), s.Unit.Symbol), '}')
+		}
+		object := func(key, word string) []byte {
+			dst := append(append([]byte(nil), x.name...), key...)
+			return append(appendJSONText(dst, word), x.unit...)
+		}
+		for _, word := range s.Words {
+			x.words = append(x.words, object(`,"word":`, word))
+		}
+		if s.Model != nil {
+			for _, c := range s.Model.Codes {
+				x.codes = append(x.codes, object(`,"code":`, decode.CodeWord(c)))
+			}
+		}
+		p.signals = append(p.signals, x)
+	}
+	return &jsonLines{jsonParts: p}
+}
+
+// Fork implements Forker: the prepared parts are shared.
+func (w *jsonLines) Fork() Formatter { return &jsonLines{jsonParts: w.jsonParts} }
 
 func (w *jsonLines) Header(dst []byte) []byte  { return dst }
 func (w *jsonLines) Trailer(dst []byte) []byte { return dst }
@@ -56,16 +73,14 @@ func (w *jsonLines) Record(dst []byte, r *decode.Record) []byte {
 		}
 		return w.decoded(dst, r)
 	case decode.ErrorFrame:
-		dst = w.open(dst, r)
-		dst = append(dst, `,"error":`...)
-		return append(append(dst, jsonText(r.Frame.Report().String())...), "}\n"...)
+		return appendJSONReport(w.open(dst, r), r.Frame)
 	}
 	if !w.all {
 		return dst
 	}
 	dst = w.open(dst, r)
 	dst = append(dst, `,"class":`...)
-	dst = append(dst, jsonText(className(r.Class))...)
+	dst = appendJSONText(dst, className(r.Class))
 	dst = append(dst, `,"id":"`...)
 	dst = appendID(dst, r.Frame)
 	if r.Class != decode.RemoteFrame {
@@ -75,36 +90,39 @@ func (w *jsonLines) Record(dst []byte, r *decode.Record) []byte {
 	return append(dst, "\"}\n"...)
 }
 
+// open begins the object of a frame that isn't decoded.
 func (w *jsonLines) open(dst []byte, r *decode.Record) []byte {
 	dst = append(dst, `{"time":`...)
 	dst = w.clock.append(dst, r.Frame.Time)
 	dst = append(dst, `,"interface":`...)
-	return append(dst, jsonText(w.plan.Interface(r.Frame.Bus))...)
+	return appendJSONText(dst, w.plan.Interface(r.Frame.Bus))
 }
 
 func (w *jsonLines) decoded(dst []byte, r *decode.Record) []byte {
 	dst = append(dst, `{"time":`...)
 	dst = w.clock.append(dst, r.Frame.Time)
 	dst = append(dst, w.heads[r.Message.Index]...)
-	dst = append(dst, `,"signals":[`...)
+	first := len(dst)
 	for i := range r.Values {
-		if i > 0 {
-			dst = append(dst, ',')
-		}
 		v := &r.Values[i]
 		s := v.Signal
-		dst = append(dst, w.names[s.Index]...)
+		x := &w.signals[s.Index]
+		switch v.State {
+		case decode.Word:
+			dst = append(dst, x.words[v.Index]...)
+			continue
+		case decode.Coded:
+			dst = append(dst, x.codes[v.Index]...)
+			continue
+		}
+		dst = append(dst, x.name...)
 		switch v.State {
 		case decode.Number:
 			dst = append(dst, `,"value":`...)
 			dst = s.AppendNumber(dst, v)
-		case decode.Word:
-			dst = append(append(dst, `,"word":`...), jsonText(s.Text(v))...)
-		case decode.Coded:
-			dst = append(append(dst, `,"code":`...), jsonText(s.Text(v))...)
 		case decode.Text:
 			w.text = s.AppendString(w.text[:0], r.Frame)
-			dst = append(append(dst, `,"text":`...), jsonText(string(w.text))...)
+			dst = appendJSONText(append(dst, `,"text":`...), w.text)
 		case decode.Octets:
 			dst = append(dst, `,"bytes":"`...)
 			dst = append(s.AppendText(dst, v, r.Frame), '"')
@@ -112,13 +130,58 @@ func (w *jsonLines) decoded(dst []byte, r *decode.Record) []byte {
 			dst = append(dst, `,"code":"`...)
 			dst = append(s.AppendText(dst, v, r.Frame), '"')
 		}
-		dst = append(dst, w.units[s.Index]...)
+		dst = append(dst, x.unit...)
+	}
+	if len(dst) > first {
+		// The first object has no comma in front.
+		dst = append(dst[:first], dst[first+1:]...)
 	}
 	dst = append(dst, ']')
-	if check := appendCheck(nil, r); len(check) > 0 {
-		dst = append(append(dst, `,"check":`...), jsonText(string(check))...)
+	if wrong(r) {
+		dst = append(dst, `,"check":["`...)
+		dst = append(appendCheck(dst, r, `","`), `"]`...)
 	}
 	return append(dst, "}\n"...)
+}
+
+// appendJSONReport ends the object of an error frame with what it says.
+func appendJSONReport(dst []byte, f *frame.Frame) []byte {
+	list := func(key string, texts []string) {
+		dst = append(append(append(dst, `,"`...), key...), `":[`...)
+		for i, text := range texts {
+			if i > 0 {
+				dst = append(dst, ',')
+			}
+			dst = appendJSONText(dst, text)
+		}
+		dst = append(dst, ']')
+	}
+	report := f.Report()
+	list("error", report.Class)
+	if len(report.Detail) > 0 {
+		list("detail", report.Detail)
+	}
+	if report.Counters {
+		dst = fmt.Appendf(dst, `,"transmitErrors":%d,"receiveErrors":%d`, report.TXErrors, report.RXErrors)
+	}
+	return append(dst, "}\n"...)
+}
+
+// appendJSONText appends a string of RFC 8259; text is valid UTF-8.
+func appendJSONText[T string | []byte](dst []byte, text T) []byte {
+	dst = append(dst, '"')
+	for i := range len(text) {
+		switch c := text[i]; {
+		case c == '"', c == '\\':
+			dst = append(dst, '\\', c)
+		case c < ' ':
+			dst = append(dst, `\u00`...)
+			dst = append(dst, hexDigits[c>>4], hexDigits[c&15])
+		default:
+			dst = append(dst, c)
+		}
+	}
+	return append(dst, '"')
 }
 
 var classNames = [decode.NumClasses]string{
@@ -129,28 +192,24 @@ var classNames = [decode.NumClasses]string{
 // className is the word for a class in outputs and in the accounting.
 func className(c decode.Class) string { return classNames[c] }
 
+const hexDigits = "0123456789ABCDEF"
+
+// appendID appends an identifier as captures show it: three digits for 11
+// bits, eight for 29.
 func appendID(dst []byte, f *frame.Frame) []byte {
-	if f.Has(frame.Extended) {
-		return fmt.Appendf(dst, "%08X", f.ID)
+	return append(dst, idDigits(f.ID, f.Has(frame.Extended))...)
+}
+
+func idDigits(id uint32, extended bool) string {
+	if extended {
+		return fmt.Sprintf("%08X", id)
 	}
-	return fmt.Appendf(dst, "%03X", f.ID)
+	return fmt.Sprintf("%03X", id)
 }
 
 func appendData(dst []byte, f *frame.Frame) []byte {
 	for _, b := range f.Payload() {
-		if b < 16 {
-			dst = append(dst, '0')
-		}
-		dst = append(dst, upper(strconv.AppendUint(nil, uint64(b), 16))...)
+		dst = append(dst, hexDigits[b>>4], hexDigits[b&15])
 	}
 	return dst
-}
-
-func upper(hex []byte) []byte {
-	for i, c := range hex {
-		if c >= 'a' {
-			hex[i] = c - 'a' + 'A'
-		}
-	}
-	return hex
 }

@@ -20,40 +20,49 @@ type Formatter interface {
 	Trailer(dst []byte) []byte
 }
 
+// Forker is a Formatter that keeps nothing from one record to the next but
+// scratch room: records may be cut into blocks, each formatted by a fork of its
+// own at the same time, and the blocks joined in order. csv, jsonl and table
+// without Options.Changes are Forkers.
+type Forker interface {
+	Formatter
+	// Fork makes another one for another goroutine.
+	Fork() Formatter
+}
+
 // Options of the formats.
 type Options struct {
 	Changes bool          // only values that differ from the signal's last one
-	Step    time.Duration // wide: a row each step
+	Step    time.Duration // table and wide: a row each step
 	All     bool          // table and jsonl: undescribed, unmapped and remote frames too
 	JSON    bool          // summary: as JSON
 	Dates   bool          // table: times as dates in UTC
 }
 
-// Formats are the names that New takes.
+// formats are the names that New takes.
 var formats = []string{"table", "csv", "wide", "jsonl", "summary", "none"}
 
-// New makes the formatter of a name; nil for none.
+// New makes the formatter of a name: table, csv, wide, jsonl or summary; nil for
+// none. Its error says which option doesn't go with it, or the nearest name.
 func New(name string, plan *decode.Plan, o Options) (Formatter, error) {
-	refuse := func(given bool, option, format string) error {
-		if given && name != format {
-			return fmt.Errorf("--%s goes with --format %s", option, format)
-		}
-		return nil
-	}
-	for _, err := range []error{refuse(o.Step != 0, "step", "wide"), refuse(o.JSON, "json", "summary"), refuse(o.Dates, "dates", "table")} {
-		if err != nil {
-			return nil, err
-		}
-	}
-	if o.Step < 0 {
+	switch {
+	case o.Step < 0:
 		return nil, fmt.Errorf("--step is below zero")
-	}
-	if o.Changes && (name == "summary" || name == "wide" && o.Step != 0) {
-		return nil, fmt.Errorf("--changes doesn't go with %s", name)
+	case o.Step != 0 && name != "wide" && name != "table":
+		return nil, fmt.Errorf("--step goes with --format table or wide")
+	case o.JSON && name != "summary":
+		return nil, fmt.Errorf("--json goes with --format summary")
+	case o.Dates && name != "table":
+		return nil, fmt.Errorf("--dates goes with --format table")
+	case o.Changes && (name == "summary" || name == "none" || o.Step != 0):
+		return nil, fmt.Errorf("--changes goes with rows of values: not with summary, none or --step")
 	}
 	var f Formatter
 	switch name {
 	case "table":
+		if o.Step > 0 {
+			return newStepTable(plan, o.Step, o.Dates), nil
+		}
 		f = newTable(plan, o)
 	case "csv":
 		f = newCSV(plan)

@@ -142,14 +142,17 @@ func (x *signalSummary) add(v *decode.Value, t int64) {
 
 func (x *signalSummary) number(v *decode.Value, t int64) {
 	s := v.Signal
-	if x.numbers == 0 || s.Compare(v, &x.min) < 0 {
-		x.min, x.minAt = *v, t
-	}
-	if x.numbers == 0 || s.Compare(v, &x.max) > 0 {
-		x.max, x.maxAt = *v, t
+	if x.numbers == 0 {
+		x.min, x.minAt, x.max, x.maxAt = *v, t, *v, t
+	} else if v.Raw != x.before.Raw || !x.had {
+		if s.Compare(v, &x.min) < 0 {
+			x.min, x.minAt = *v, t
+		} else if s.Compare(v, &x.max) > 0 {
+			x.max, x.maxAt = *v, t
+		}
 	}
 	x.numbers++
-	if x.had && (v.Raw != x.before.Raw) {
+	if x.had && v.Raw != x.before.Raw && !isProtection(s) {
 		if !x.steps || s.CompareDistance(v, &x.before, &x.to, &x.from) > 0 {
 			x.from, x.to, x.stepAt, x.steps = x.before, *v, t, true
 		}

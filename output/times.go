@@ -5,11 +5,12 @@ import "time"
 // appendTime appends nanoseconds as seconds with 6 digits, or 9 where the last
 // three aren't zero.
 func appendTime(dst []byte, ns int64) []byte {
+	magnitude := uint64(ns)
 	if ns < 0 {
 		dst = append(dst, '-')
-		ns = -ns
+		magnitude = -magnitude
 	}
-	seconds, rest := uint64(ns)/1e9, uint64(ns)%1e9
+	seconds, rest := magnitude/1e9, magnitude%1e9
 	var buf [32]byte
 	i := len(buf)
 	digits := 9
@@ -47,9 +48,9 @@ func (c *clock) append(dst []byte, ns int64) []byte {
 	if ns < 0 || micros*1000 != rest {
 		return appendTime(dst, ns)
 	}
-	if second != c.second || c.whole == nil {
+	if second != c.second || len(c.whole) == 0 {
 		c.second = second
-		text := appendTime(nil, second*1e9)
+		text := appendTime(c.whole[:0], second*1e9)
 		c.whole = text[:len(text)-6]
 	}
 	dst = append(dst, c.whole...)
@@ -59,6 +60,12 @@ func (c *clock) append(dst []byte, ns int64) []byte {
 		byte('0'+b/100), byte('0'+b/10%10), byte('0'+b%10))
 }
 
+// appendDate appends a date and time of day in UTC (RFC 3339 without its T and
+// Z), with 6 digits of the second or 9 where the last three aren't zero.
 func appendDate(dst []byte, ns int64) []byte {
-	return time.Unix(0, ns).UTC().AppendFormat(dst, "2006-01-02 15:04:05.000000")
+	layout := "2006-01-02 15:04:05.000000"
+	if ns%1000 != 0 {
+		layout = "2006-01-02 15:04:05.000000000"
+	}
+	return time.Unix(0, ns).UTC().AppendFormat(dst, layout)
 }

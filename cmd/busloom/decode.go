@@ -77,7 +77,7 @@ writing failed; 130 interrupted. docs/output.md has the columns and classes.`,
 	flags.StringVar(&f.from, "from", "", "leave out what is earlier: seconds as in the capture, or +SECONDS after its first record")
 	flags.StringVar(&f.to, "to", "", "leave out what is later")
 	flags.BoolVar(&f.changes, "changes", false, "only values that differ from the signal's last one")
-	flags.DurationVar(&f.step, "step", 0, "wide: a row each STEP (such as 100ms) instead of each frame")
+	flags.DurationVar(&f.step, "step", 0, "table, wide: a row each STEP (such as 100ms) with the last values held")
 	flags.BoolVar(&f.all, "all", false, "also show undescribed, unmapped and remote frames")
 	flags.BoolVar(&f.strict, "strict", false, "exit with 4 if a checksum or counter failed")
 	flags.StringVar(&f.times, "times", "written", "how times are meant: written, or since-previous where each is the distance from the line before")
