@@ -209,6 +209,8 @@ func (l *lineReader) id(f *frame.Frame) *lineError {
 		return l.fail(start, fmt.Sprintf("the identifier %03X needs more than 11 bits", v), expected)
 	case n == 8:
 		return l.fail(start, fmt.Sprintf("the identifier %08X needs more than 29 bits", v), expected)
+	case n < 3:
+		return l.fail(l.at, "the identifier is cut short: "+l.found(l.at), expected)
 	default:
 		return l.fail(start, fmt.Sprintf("the identifier has %d digits", n), expected)
 	}

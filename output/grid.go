@@ -41,8 +41,10 @@ func newGrid(signals []*decode.Signal, names []string, dates bool) *grid {
 	return g
 }
 
-// nameParts cuts wheel[front_left].speed into wheel, front_left, speed.
+// nameParts cuts wheel[front_left].speed into wheel, front_left, speed, and
+// keeps "on chassis" together.
 func nameParts(path string) []string {
+	path = strings.Replace(path, " on ", ".on ", 1)
 	return strings.FieldsFunc(path, func(r rune) bool { return r == '.' || r == '[' || r == ']' })
 }
 

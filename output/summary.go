@@ -4,6 +4,7 @@ import (
 	"slices"
 
 	"busloom/decode"
+	"busloom/schema"
 )
 
 // summary gathers what a capture holds and writes it at the end: for each
@@ -203,4 +204,10 @@ func busOrder(p *decode.Plan, bus string) int {
 		}
 	}
 	return len(p.Network.Buses)
+}
+
+// isProtection reports whether a signal is a counter, a checksum or a constant
+// beside them: its values say nothing of the vehicle.
+func isProtection(s *decode.Signal) bool {
+	return s.Model != nil && (s.Model.Kind == schema.Counter || s.Model.Kind == schema.Checksum || s.Model.Fixed != nil)
 }

@@ -1,160 +1,209 @@
 package output
 
 import (
+	"unicode"
 	"unicode/utf8"
 
 	"busloom/decode"
-	"busloom/schema"
 )
 
 // table writes lines for people. With one wanted message its signals are
-// columns; otherwise each frame is a line of name and value, going on below
-// where it gets too wide. Counters and checksums are left out, since what they
-// are for is said behind each line.
+// columns; otherwise each frame is a line of names and values that goes on
+// below where it gets too wide.
 type table struct {
-	plan   *decode.Plan
-	all    bool
-	dates  bool
-	one    *decode.Message // the only wanted message
-	grid   *grid
-	column []int // by Signal.Index: column + 1, 0 for none
-	buses  int   // widest bus name
-	names  int   // widest message name
+	*tableLayout
 	cell   []byte
-	cells  [][]byte
+	note   []byte
+	values []*decode.Value // of the current record, by place in its message
 }
 
-// widestLine is where a line of the table goes on below.
+// tableLayout is prepared once.
+type tableLayout struct {
+	plan    *decode.Plan
+	all     bool
+	dates   bool
+	columns *columns // nil: frames are lists
+	buses   int      // widest bus name
+	names   int      // widest message name
+	widest  int      // most signals of a message
+	items   [][]listItem
+}
+
+// widestLine is where a list goes on below, and the width that columns try to
+// keep to.
 const widestLine = 118
 
 func newTable(plan *decode.Plan, o Options) *table {
-	t := &table{plan: plan, all: o.All, dates: o.Dates, column: make([]int, len(plan.Signals))}
-	wanted := 0
-	for _, m := range plan.Messages {
-		if m.Wanted {
-			wanted++
-			t.one = m
-			t.buses = max(t.buses, len(m.Bus))
-			t.names = max(t.names, len(m.Model.Name))
-		}
-	}
-	var shown []*decode.Signal
-	var names []string
-	for _, s := range plan.Signals {
-		if isProtection(s) {
+	l := &tableLayout{plan: plan, all: o.All, dates: o.Dates, items: make([][]listItem, len(plan.Messages))}
+	var wanted []*decode.Message
+	for i, m := range plan.Messages {
+		if !m.Wanted {
 			continue
 		}
-		shown = append(shown, s)
-		names = append(names, s.Path)
-		t.column[s.Index] = len(shown)
+		wanted = append(wanted, m)
+		l.buses = max(l.buses, len(m.Bus))
+		l.names = max(l.names, len(m.Model.Name))
+		l.widest = max(l.widest, len(m.Signals))
+		l.items[i] = listItems(m)
 	}
-	if wanted != 1 || len(shown) == 0 {
-		t.one = nil
-		return t
+	if len(wanted) == 1 && len(wanted[0].Signals) > 0 {
+		l.columns = newColumns(wanted[0], l.timeWidth())
 	}
-	t.grid = newGrid(shown, names, o.Dates)
-	t.cells = make([][]byte, len(shown))
-	return t
+	return l.table()
 }
 
-// isProtection reports whether a signal is a counter, a checksum or a constant
-// beside them.
-func isProtection(s *decode.Signal) bool {
-	return s.Model != nil && (s.Model.Kind == schema.Counter || s.Model.Kind == schema.Checksum || s.Model.Fixed != nil)
+func (l *tableLayout) table() *table {
+	return &table{tableLayout: l, values: make([]*decode.Value, l.widest)}
 }
 
-// Header names the message and its columns.
+// Fork implements Forker: the layout is shared.
+func (t *table) Fork() Formatter { return t.tableLayout.table() }
+
+func (l *tableLayout) timeWidth() int {
+	if l.dates {
+		return len("2006-01-02 15:04:05.000000")
+	}
+	return len("1700000000.000000")
+}
+
+// Header names the columns.
 func (t *table) Header(dst []byte) []byte {
-	if t.one == nil {
+	if t.columns == nil {
 		return dst
 	}
-	dst = append(dst, t.one.Model.Name+" on "+t.one.Bus...)
-	if t.one.Model.Text != "" {
-		dst = append(dst, ": "+t.one.Model.Text...)
+	clock := "time [s]"
+	if t.dates {
+		clock = "time [UTC]"
 	}
-	return t.grid.header(append(dst, '\n'))
+	return t.columns.header(dst, clock)
 }
 
 func (t *table) Trailer(dst []byte) []byte { return dst }
 
+func (t *table) appendTime(dst []byte, ns int64) []byte {
+	start := len(dst)
+	if t.dates {
+		dst = appendDate(dst, ns)
+	} else {
+		dst = appendTime(dst, ns)
+	}
+	return appendBlanks(dst, t.timeWidth()-(len(dst)-start))
+}
+
 func (t *table) Record(dst []byte, r *decode.Record) []byte {
-	switch r.Class {
-	case decode.Decoded:
-		switch {
-		case !r.Message.Wanted:
+	if r.Class == decode.Decoded {
+		if !r.Message.Wanted {
 			return dst
-		case t.one != nil:
-			return t.columns(dst, r)
+		}
+		t.spread(r)
+		if t.columns != nil {
+			return t.row(dst, r)
 		}
 		return t.list(dst, r)
-	case decode.ErrorFrame:
-		dst = appendStamp(dst, r.Frame.Time, t.dates)
-		dst = append(dst, "  error frame on "+t.plan.Interface(r.Frame.Bus)+": "+r.Frame.Report().String()...)
-		return append(dst, '\n')
 	}
-	if !t.all {
+	if r.Class != decode.ErrorFrame && !t.all {
 		return dst
 	}
-	dst = appendStamp(dst, r.Frame.Time, t.dates)
+	dst = t.appendTime(dst, r.Frame.Time)
 	dst = append(dst, "  "+className(r.Class)+" on "+t.plan.Interface(r.Frame.Bus)+": "...)
+	switch r.Class {
+	case decode.ErrorFrame:
+		return append(append(dst, r.Frame.Report().String()...), '\n')
+	case decode.RemoteFrame:
+		return append(appendID(dst, r.Frame), '\n')
+	}
 	dst = appendID(dst, r.Frame)
-	if r.Class != decode.RemoteFrame && r.Frame.Len > 0 {
+	if r.Frame.Len > 0 {
 		dst = appendData(append(dst, ' '), r.Frame)
 	}
 	return append(dst, '\n')
 }
 
-func (t *table) columns(dst []byte, r *decode.Record) []byte {
-	for i := range t.cells {
-		t.cells[i] = t.cells[i][:0]
-	}
+// spread puts the record's values at their signals' places.
+func (t *table) spread(r *decode.Record) {
+	clear(t.values)
 	for i := range r.Values {
 		v := &r.Values[i]
-		if c := t.column[v.Signal.Index]; c > 0 {
-			cell := &t.cells[c-1]
-			*cell = printableText(v.Signal.AppendText(*cell, v, r.Frame))
-		}
+		t.values[v.Signal.Index-r.Message.Signals[0].Index] = v
 	}
-	return t.grid.row(dst, r.Frame.Time, t.cells, appendCheck(nil, r, phrases))
 }
 
-func (t *table) list(dst []byte, r *decode.Record) []byte {
-	start := len(dst)
-	dst = appendStamp(dst, r.Frame.Time, t.dates)
-	dst = append(dst, "  "...)
-	dst = appendPadded(dst, []byte(r.Message.Bus), t.buses, false)
-	dst = append(dst, "  "...)
-	dst = appendPadded(dst, []byte(r.Message.Model.Name), t.names, false)
-	indent := len(dst) - start
-	column := indent
-	gap := func(need int) {
-		if column > indent && column+2+need > widestLine {
-			dst = append(dst, '\n')
-			for range indent {
-				dst = append(dst, ' ')
-			}
-			column = indent
-		}
-		dst = append(dst, "  "...)
-		column += 2 + need
+// row writes a frame in columns. What a cell has no room for stands in full
+// behind the line.
+func (t *table) row(dst []byte, r *decode.Record) []byte {
+	dst = t.appendTime(dst, r.Frame.Time)
+	note := t.note[:0]
+	if wrong(r) {
+		note = appendCheck(note, r, phrases)
 	}
-	if check := appendCheck(nil, r, phrases); len(check) > 0 {
-		gap(2 + len(check))
-		dst = append(append(dst, "! "...), check...)
-	}
-	for i := range r.Values {
-		v := &r.Values[i]
-		s := v.Signal
-		if t.column[s.Index] == 0 {
+	blanks := 0 // not written yet
+	for i := range t.columns.cells {
+		c := &t.columns.cells[i]
+		blanks += 2
+		v := t.values[i]
+		if v == nil {
+			blanks += c.width
 			continue
 		}
-		t.cell = append(append(t.cell[:0], s.Path...), ' ')
-		t.cell = printableText(s.AppendText(t.cell, v, r.Frame))
-		if v.State == decode.Number && s.Unit.Symbol != "" {
-			t.cell = append(append(t.cell, ' '), s.Unit.Symbol...)
+		t.cell = v.Signal.AppendText(t.cell[:0], v, r.Frame)
+		if v.State == decode.Text {
+			t.cell = printable(t.cell)
 		}
-		gap(utf8.RuneCount(t.cell))
+		width := utf8.RuneCount(t.cell)
+		after := 0
+		if v.State == decode.Number {
+			after = c.afterPoint(t.cell)
+		}
+		if width+after > c.width {
+			if v.State != decode.Missing {
+				if len(note) > 0 {
+					note = append(note, phrases...)
+				}
+				note = append(append(append(note, v.Signal.Path...), ' '), t.cell...)
+			}
+			t.cell = append(t.cell[:0], shortCell(v)...)
+			width, after = len(t.cell), 0
+		}
+		before := max(0, c.width-width-after)
+		if c.left {
+			before, after = 0, before
+		}
+		dst = appendBlanks(dst, blanks+before)
 		dst = append(dst, t.cell...)
+		blanks = after
+	}
+	t.note = note
+	if len(note) > 0 {
+		dst = append(append(appendBlanks(dst, blanks), "  ! "...), note...)
 	}
 	return append(dst, '\n')
+}
+
+func appendBlanks(dst []byte, n int) []byte {
+	for range n {
+		dst = append(dst, ' ')
+	}
+	return dst
+}
+
+// printable replaces what a terminal must not get: a frame's text may hold
+// control characters.
+func printable(text []byte) []byte {
+	plain := true
+	for _, c := range text {
+		plain = plain && c >= ' ' && c < 0x7F
+	}
+	if plain {
+		return text
+	}
+	out := text[:0:0]
+	for len(text) > 0 {
+		r, n := utf8.DecodeRune(text)
+		if !unicode.IsPrint(r) {
+			r = '.'
+		}
+		out = utf8.AppendRune(out, r)
+		text = text[n:]
+	}
+	return out
 }

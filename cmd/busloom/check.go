@@ -38,8 +38,8 @@ usage; 5 a file can't be read.`,
 				}
 				all.Add(list)
 				if network != nil && f == problemsText {
-					fmt.Fprintf(std.err, "%s: %s: %d buses, %d ECUs, %d messages, %d signals; %s\n", path, network.Name,
-						len(network.Buses), len(network.ECUs), len(network.Messages), network.CountSignals(), countProblems(list))
+					fmt.Fprintf(std.err, "%s: %s: %s, %s, %s, %s; %s\n", path, network.Name, count(len(network.Buses), "bus"),
+						count(len(network.ECUs), "ECU"), count(len(network.Messages), "message"), count(network.CountSignals(), "signal"), countProblems(list))
 				} else if f == problemsText {
 					fmt.Fprintf(std.err, "%s: %s\n", path, countProblems(list))
 				}

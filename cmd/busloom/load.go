@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"io"
 	"os"
+	"strings"
 
 	"busloom/diag"
 	"busloom/schema"
@@ -78,14 +79,20 @@ func readDescription(path string) ([]byte, error) {
 }
 
 func countProblems(list *diag.List) string {
-	plural := func(n int, word string) string {
-		if n == 1 {
-			return fmt.Sprintf("1 %s", word)
-		}
-		return fmt.Sprintf("%d %ss", n, word)
+	return count(list.Count(diag.Error), "error") + ", " + count(list.Count(diag.Warning), "warning") +
+		", " + count(list.Count(diag.Note), "note")
+}
+
+// count is 1 bus, 2 buses.
+func count(n int, word string) string {
+	switch {
+	case n == 1:
+	case strings.HasSuffix(word, "s"):
+		word += "es"
+	default:
+		word += "s"
 	}
-	return plural(list.Count(diag.Error), "error") + ", " + plural(list.Count(diag.Warning), "warning") +
-		", " + plural(list.Count(diag.Note), "note")
+	return fmt.Sprintf("%d %s", n, word)
 }
 
 // colorful reports whether w is a terminal whose user wants colours.
@@ -96,4 +103,3 @@ func colorful(w io.Writer) bool {
 	f, ok := w.(*os.File)
 	return ok && term.IsTerminal(int(f.Fd()))
 }
-

@@ -51,7 +51,7 @@ type wholeFile struct {
 	Decls []*gDecl `parser:"@@*"`
 }
 
-var wholeParser = participle.MustBuild[wholeFile](participle.Lexer(definition{}), participle.UseLookahead(1))
+var wholeParser = participle.MustBuild[wholeFile](participle.Lexer(definition{}), participle.UseLookahead(0))
 
 // checkParse proves what Parse promises of any text.
 func checkParse(t require.TestingT, text string) {

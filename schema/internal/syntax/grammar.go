@@ -255,7 +255,7 @@ type gCounter struct {
 
 type gMethod struct {
 	Word    token    `parser:"@\"checksum\":Word"`
-	E2E     token    `parser:"(   @\"e2e\":Word"`
+	E2E     token    `parser:"(   (?= \"e2e\":Word \"profile\":Word ) @\"e2e\":Word"`
 	Profile token    `parser:"    \"profile\":Word @Number"`
 	Mode    token    `parser:"    @( \"both\":Word | \"alternating\":Word | \"low\":Word | \"nibble\":Word )? \",\""`
 	IDs     gNumbers `parser:"    \"id\":Word @@ \",\""`
@@ -380,7 +380,7 @@ type parsers struct {
 }
 
 func newParsers() (*parsers, error) {
-	p, err := participle.Build[whole](participle.Lexer(definition{}), participle.UseLookahead(1))
+	p, err := participle.Build[whole](participle.Lexer(definition{}), participle.UseLookahead(0))
 	if err != nil {
 		return nil, err
 	}

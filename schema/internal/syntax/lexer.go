@@ -238,7 +238,8 @@ func (s *scanner) word() {
 // number (10ms), so the number ends before a letter that belongs to none.
 func (s *scanner) number() {
 	end := s.simpleNumber(s.at)
-	if end+1 < len(s.text) && s.text[end] == '/' && isDigit(s.text[end+1]) {
+	// More than one stroke, or more than one point, is a mistake of its own.
+	for end+1 < len(s.text) && (s.text[end] == '/' || s.text[end] == '.') && isDigit(s.text[end+1]) {
 		end = s.simpleNumber(end + 1)
 	}
 	if plainNumber(s.text[s.at:end]) {
@@ -259,12 +260,15 @@ func plainNumber(text []byte) bool {
 	if len(text) > 30 {
 		return false
 	}
+	points := 0
 	for _, c := range text {
-		if !isDigit(c) && c != '.' {
+		if c == '.' {
+			points++
+		} else if !isDigit(c) {
 			return false
 		}
 	}
-	return true
+	return points <= 1
 }
 
 func (s *scanner) simpleNumber(at int) int {

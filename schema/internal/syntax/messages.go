@@ -118,6 +118,9 @@ func (r *reader) tell(at piece, err error, context string) {
 		want = "more"
 	}
 	switch {
+	case context == "message" && want == "(" && i > 0 && r.isWord(at.toks[i-1], "on"):
+		r.report(diag.UnexpectedWord, r.tokSpan(at.toks[i-1]), "the identifier is missing before on", "write it behind the message's name: three hexadecimal digits such as 0x1A0, eight such as 0x18FEF100, or an id form with its fields")
+		return
 	case want != "}":
 	case context == "crc":
 		want = "polynomial, initial, final, check, reflected or }"
@@ -143,7 +146,7 @@ func (r *reader) tell(at piece, err error, context string) {
 		problem = fmt.Sprintf("%s can't stand here, where it would name a member because of the %s behind it: expected %s", r.plain(t), r.tokText(at.toks[i+1]), want)
 	case t.is(tokWord) || t.is(tokUnit):
 		words := strings.FieldsFunc(want, func(c rune) bool { return c == ' ' || c == ',' })
-		if near := diag.Nearest(r.tokText(t), words); near != "" && (len(near) > 3 || near == want) {
+		if near := diag.Nearest(r.tokText(t), words); near != "" && isLetter(near[0]) && (len(near) > 3 || near == want) {
 			remedy = "did you mean " + near + "?"
 		}
 	}
@@ -166,7 +169,7 @@ func inPlainWords(expected string) string {
 
 func remedyFor(want string) string {
 	switch {
-	case want == "}" || want == "{" || want == ")" || want == "]" || want == "," || want == ":":
+	case want == ".." || want == "=" || want == "}" || want == "{" || want == ")" || want == "]" || want == "," || want == ":":
 		return "write " + want + " here"
 	case want == "more":
 		return "complete it"
@@ -188,7 +191,7 @@ func (r *reader) tellLeftOver(at piece, context string) {
 	case t.is(tokKeyword):
 		problem += ": it is a reserved word"
 	case t.is(tokUnit) && nearest(r.tokText(t), clauseWords) == "":
-		problem = r.plain(t) + " is a unit, and can't stand here"
+		problem = r.plain(t) + " behind a number is read as its unit, and can't stand here"
 	case (t.is(tokWord) || t.is(tokUnit)) && (context == "clause" || context == "member" || context == "item"):
 		problem = r.plain(t) + " is no clause of a member"
 		remedy = "the clauses are: a kind, = formula, in, within, codes, states, initial, tolerance, replaced by, note, and a text at the end"
