@@ -16,8 +16,6 @@ import (
 )
 
 func main() {
-	// A closed pipe is to be an error that is reported, not a silent end.
-	signal.Ignore(syscall.SIGPIPE)
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
 	code := run(ctx, os.Args[1:], os.Stdin, os.Stdout, os.Stderr)
 	stop()
@@ -32,6 +30,8 @@ type streams struct {
 
 // run is the whole program; its result is the exit code.
 func run(ctx context.Context, args []string, stdin io.Reader, stdout, stderr io.Writer) int {
+	// A closed pipe is to be an error that is reported, not a silent end.
+	signal.Ignore(syscall.SIGPIPE)
 	std := &streams{stdin, stdout, stderr}
 	root := rootCommand(std)
 	root.SetArgs(args)
