@@ -57,14 +57,36 @@ func newWide(plan *decode.Plan, step time.Duration) *held {
 
 // newStepTable writes rows as a table for people, one each step.
 func newStepTable(plan *decode.Plan, step time.Duration, dates bool) *held {
-	g := newGrid(plan.Signals, labels(plan), dates)
+	var (
+		signals []*decode.Signal
+		names   []string
+		all     = labels(plan)
+		places  = make([]int, len(plan.Signals)) // column + 1, 0 for none
+	)
+	for _, m := range plan.Messages {
+		for _, s := range shown(m) {
+			signals = append(signals, s)
+			names = append(names, all[s.Index])
+			places[s.Index] = len(signals)
+		}
+	}
+	c := newColumns(signals, names, dates)
+	row := make([][]byte, len(signals))
 	return &held{
 		step: int64(step), cells: make([][]byte, len(plan.Signals)),
-		head: g.header,
+		head: c.header,
 		cell: func(dst []byte, v *decode.Value, r *decode.Record) []byte {
-			return printableText(v.Signal.AppendText(dst, v, r.Frame))
+			if at := places[v.Signal.Index]; at > 0 {
+				dst, _ = c.cells[at-1].appendCell(dst, v, r)
+			}
+			return dst
 		},
-		row: func(dst []byte, ns int64, cells [][]byte) []byte { return g.row(dst, ns, cells, nil) },
+		row: func(dst []byte, ns int64, cells [][]byte) []byte {
+			for i, s := range signals {
+				row[i] = cells[s.Index]
+			}
+			return c.appendRow(dst, ns, row, nil)
+		},
 	}
 }
 

@@ -9,11 +9,13 @@ import (
 
 // table writes lines for people. With one wanted message its signals are
 // columns; otherwise each frame is a line of names and values that goes on
-// below where it gets too wide.
+// below where it gets too wide. Counters and checksums are left out, since what
+// they are for is said behind each line.
 type table struct {
 	*tableLayout
 	cell   []byte
 	note   []byte
+	cells  [][]byte        // of a row
 	values []*decode.Value // of the current record, by place in its message
 }
 
@@ -22,73 +24,85 @@ type tableLayout struct {
 	plan    *decode.Plan
 	all     bool
 	dates   bool
-	columns *columns // nil: frames are lists
-	buses   int      // widest bus name
-	names   int      // widest message name
-	widest  int      // most signals of a message
-	items   [][]listItem
+	one     *decode.Message // what the columns are of
+	columns *columns        // nil: frames are lists
+	places  []int           // of the columns' signals in the message
+	buses   int             // widest bus name
+	names   int             // widest message name
+	widest  int             // most signals of a message
+	items   [][]listItem    // by Message.Index
 }
 
 // widestLine is where a list goes on below, and the width that columns try to
-// keep to.
-const widestLine = 118
+// keep to; what would be wider than widestColumns is written as lists.
+const (
+	widestLine    = 118
+	widestColumns = 150
+)
 
 func newTable(plan *decode.Plan, o Options) *table {
 	l := &tableLayout{plan: plan, all: o.All, dates: o.Dates, items: make([][]listItem, len(plan.Messages))}
-	var wanted []*decode.Message
+	wanted := 0
 	for i, m := range plan.Messages {
 		if !m.Wanted {
 			continue
 		}
-		wanted = append(wanted, m)
+		wanted++
+		l.one = m
 		l.buses = max(l.buses, len(m.Bus))
 		l.names = max(l.names, len(m.Model.Name))
 		l.widest = max(l.widest, len(m.Signals))
-		l.items[i] = listItems(m)
+		l.items[i] = listItems(m, shown(m))
 	}
-	if len(wanted) == 1 && len(wanted[0].Signals) > 0 {
-		l.columns = newColumns(wanted[0], l.timeWidth())
+	if wanted == 1 {
+		signals := shown(l.one)
+		var names []string
+		for _, s := range signals {
+			names = append(names, s.Path)
+			l.places = append(l.places, s.Index-l.one.Signals[0].Index)
+		}
+		if c := newColumns(signals, names, o.Dates); len(signals) > 0 && c.total() <= widestColumns {
+			l.columns = c
+		}
 	}
 	return l.table()
 }
 
+// shown are the signals of a message that people are shown: those that aren't
+// protection, or all if there are no others.
+func shown(m *decode.Message) []*decode.Signal {
+	var out []*decode.Signal
+	for _, s := range m.Signals {
+		if !isProtection(s) {
+			out = append(out, s)
+		}
+	}
+	if len(out) == 0 {
+		return m.Signals
+	}
+	return out
+}
+
 func (l *tableLayout) table() *table {
-	return &table{tableLayout: l, values: make([]*decode.Value, l.widest)}
+	return &table{tableLayout: l, values: make([]*decode.Value, l.widest), cells: make([][]byte, len(l.places))}
 }
 
 // Fork implements Forker: the layout is shared.
 func (t *table) Fork() Formatter { return t.tableLayout.table() }
-
-func (l *tableLayout) timeWidth() int {
-	if l.dates {
-		return len("2006-01-02 15:04:05.000000")
-	}
-	return len("1700000000.000000")
-}
 
 // Header names the columns.
 func (t *table) Header(dst []byte) []byte {
 	if t.columns == nil {
 		return dst
 	}
-	clock := "time [s]"
-	if t.dates {
-		clock = "time [UTC]"
+	dst = append(dst, t.one.Model.Name+" on "+t.one.Bus...)
+	if t.one.Model.Text != "" {
+		dst = append(dst, ": "+t.one.Model.Text...)
 	}
-	return t.columns.header(dst, clock)
+	return t.columns.header(append(dst, '\n'))
 }
 
 func (t *table) Trailer(dst []byte) []byte { return dst }
-
-func (t *table) appendTime(dst []byte, ns int64) []byte {
-	start := len(dst)
-	if t.dates {
-		dst = appendDate(dst, ns)
-	} else {
-		dst = appendTime(dst, ns)
-	}
-	return appendBlanks(dst, t.timeWidth()-(len(dst)-start))
-}
 
 func (t *table) Record(dst []byte, r *decode.Record) []byte {
 	if r.Class == decode.Decoded {
@@ -104,7 +118,7 @@ func (t *table) Record(dst []byte, r *decode.Record) []byte {
 	if r.Class != decode.ErrorFrame && !t.all {
 		return dst
 	}
-	dst = t.appendTime(dst, r.Frame.Time)
+	dst = appendStamp(dst, r.Frame.Time, t.dates)
 	dst = append(dst, "  "+className(r.Class)+" on "+t.plan.Interface(r.Frame.Bus)+": "...)
 	switch r.Class {
 	case decode.ErrorFrame:
@@ -131,52 +145,34 @@ func (t *table) spread(r *decode.Record) {
 // row writes a frame in columns. What a cell has no room for stands in full
 // behind the line.
 func (t *table) row(dst []byte, r *decode.Record) []byte {
-	dst = t.appendTime(dst, r.Frame.Time)
-	note := t.note[:0]
-	if wrong(r) {
-		note = appendCheck(note, r, phrases)
-	}
-	blanks := 0 // not written yet
-	for i := range t.columns.cells {
-		c := &t.columns.cells[i]
-		blanks += 2
-		v := t.values[i]
+	note := appendCheck(t.note[:0], r, phrases)
+	for i, place := range t.places {
+		t.cells[i] = t.cells[i][:0]
+		v := t.values[place]
 		if v == nil {
-			blanks += c.width
 			continue
 		}
-		t.cell = v.Signal.AppendText(t.cell[:0], v, r.Frame)
-		if v.State == decode.Text {
-			t.cell = printable(t.cell)
-		}
-		width := utf8.RuneCount(t.cell)
-		after := 0
-		if v.State == decode.Number {
-			after = c.afterPoint(t.cell)
-		}
-		if width+after > c.width {
-			if v.State != decode.Missing {
-				if len(note) > 0 {
-					note = append(note, phrases...)
-				}
-				note = append(append(append(note, v.Signal.Path...), ' '), t.cell...)
+		var fits bool
+		t.cells[i], fits = t.columns.cells[i].appendCell(t.cells[i], v, r)
+		if !fits && v.State != decode.Missing {
+			if len(note) > 0 {
+				note = append(note, phrases...)
 			}
-			t.cell = append(t.cell[:0], shortCell(v)...)
-			width, after = len(t.cell), 0
+			note = appendShown(append(append(note, v.Signal.Path...), ' '), v, r)
 		}
-		before := max(0, c.width-width-after)
-		if c.left {
-			before, after = 0, before
-		}
-		dst = appendBlanks(dst, blanks+before)
-		dst = append(dst, t.cell...)
-		blanks = after
 	}
 	t.note = note
-	if len(note) > 0 {
-		dst = append(append(appendBlanks(dst, blanks), "  ! "...), note...)
+	return t.columns.appendRow(dst, r.Frame.Time, t.cells, note)
+}
+
+// appendShown appends a value as people are shown it.
+func appendShown(dst []byte, v *decode.Value, r *decode.Record) []byte {
+	start := len(dst)
+	dst = v.Signal.AppendText(dst, v, r.Frame)
+	if v.State == decode.Text {
+		dst = append(dst[:start], printable(dst[start:])...)
 	}
-	return append(dst, '\n')
+	return dst
 }
 
 func appendBlanks(dst []byte, n int) []byte {

@@ -12,55 +12,49 @@ import (
 	"busloom/unit"
 )
 
-// columns lays out one message: a column for each signal, wide enough for all
+// columns lays signals out side by side: a column for each, wide enough for all
 // of its numbers and words, so that no value moves what stands beside it.
 type columns struct {
-	message *decode.Message
-	time    int // width of the time
-	cells   []column
+	dates bool
+	cells []column
 }
 
 type column struct {
-	parts []string // of the path: wheel, front_left, speed
+	parts []string // of the name: wheel, front_left, speed
 	unit  string
 	width int
 	left  bool // words and texts; numbers are at the right
 	point int  // digits after the point that every number has room for
 }
 
-// widestColumns is the widest row; what would be wider is written as lists.
-const widestColumns = 150
-
-// newColumns returns nil where a row would be too wide. Codes are in full if
-// that keeps the row to widestLine, otherwise as their class.
-func newColumns(m *decode.Message, time int) *columns {
-	var c *columns
+// newColumns lays out signals with their names. Codes are in full if that keeps
+// a row to widestLine, otherwise as their class.
+func newColumns(signals []*decode.Signal, names []string, dates bool) *columns {
+	c := &columns{dates: dates}
 	for _, full := range []bool{true, false} {
-		c = &columns{message: m, time: time}
-		for _, s := range m.Signals {
-			c.cells = append(c.cells, newColumn(s, full))
+		c.cells = c.cells[:0]
+		for i, s := range signals {
+			c.cells = append(c.cells, newColumn(s, nameParts(names[i]), full))
 		}
 		c.widen()
 		if c.total() <= widestLine {
-			return c
+			break
 		}
-	}
-	if c.total() > widestColumns {
-		return nil
 	}
 	return c
 }
 
+// total is the width of a row.
 func (c *columns) total() int {
-	width := c.time
+	width := stampWidth(c.dates)
 	for i := range c.cells {
 		width += 2 + c.cells[i].width
 	}
 	return width
 }
 
-func newColumn(s *decode.Signal, fullCodes bool) column {
-	c := column{parts: pathParts(s.Path), unit: s.Unit.Symbol, left: !s.IsNumber(), point: s.Decimals}
+func newColumn(s *decode.Signal, parts []string, fullCodes bool) column {
+	c := column{parts: parts, unit: s.Unit.Symbol, left: !s.IsNumber(), point: s.Decimals}
 	c.width = max(len(c.parts[len(c.parts)-1]), utf8.RuneCountInString(c.unit))
 	for _, word := range s.Words {
 		c.width = max(c.width, utf8.RuneCountInString(word))
@@ -153,14 +147,14 @@ func power(n int) *big.Rat {
 // afterPoint is how many blanks follow a number so that the points of a column
 // are in one place.
 func (c *column) afterPoint(text []byte) int {
-	if c.point == 0 || len(text) >= c.width {
+	if c.point == 0 {
 		return 0
 	}
 	at := bytes.IndexByte(text, '.')
 	if at < 0 {
-		return min(c.point+1, c.width-len(text))
+		at = len(text)
 	}
-	return max(0, c.point-(len(text)-at-1))
+	return max(0, min(c.point+1-(len(text)-at), c.width-len(text)))
 }
 
 // shortCell is what stands in a column that is too narrow for a value.
@@ -176,9 +170,11 @@ func shortCell(v *decode.Value) string {
 	return ">"
 }
 
-// pathParts cuts wheel[front_left].speed into wheel, front_left, speed.
-func pathParts(path string) []string {
-	return strings.FieldsFunc(path, func(r rune) bool { return r == '.' || r == '[' || r == ']' })
+// nameParts cuts wheel[front_left].speed into wheel, front_left, speed, and
+// keeps "on chassis" together.
+func nameParts(name string) []string {
+	name = strings.Replace(name, " on ", ".on ", 1)
+	return strings.FieldsFunc(name, func(r rune) bool { return r == '.' || r == '[' || r == ']' })
 }
 
 // group is columns side by side that share the first parts of their paths.
@@ -232,17 +228,16 @@ func (c *columns) widen() {
 	}
 }
 
-// header writes what the message is, then the parts of the paths below each
-// other, a line under what several columns share, and the units.
-func (c *columns) header(dst []byte, clock string) []byte {
-	m := c.message.Model
-	dst = append(dst, m.Name+" on "+c.message.Bus...)
-	if m.Text != "" {
-		dst = append(dst, ": "+m.Text...)
+// header writes the parts of the names below each other, a line behind what
+// several columns share, and the units.
+func (c *columns) header(dst []byte) []byte {
+	clock := "time [s]"
+	if c.dates {
+		clock = "time [UTC]"
 	}
-	dst = append(dst, '\n')
+	time := stampWidth(c.dates)
 	for row := c.rows() - 1; row >= 0; row-- {
-		line := strings.Repeat(" ", c.time)
+		line := strings.Repeat(" ", time)
 		next := 0
 		for _, g := range c.groups(row) {
 			for ; next < g.from; next++ {
@@ -261,7 +256,7 @@ func (c *columns) header(dst []byte, clock string) []byte {
 		}
 		dst = append(append(dst, strings.TrimRight(line, " ")...), '\n')
 	}
-	names, units := strings.Repeat(" ", c.time), clock+strings.Repeat(" ", c.time-len(clock))
+	names, units := strings.Repeat(" ", time), clock+strings.Repeat(" ", time-len(clock))
 	for i := range c.cells {
 		x := &c.cells[i]
 		names += "  " + x.padded(x.parts[len(x.parts)-1])
@@ -269,6 +264,54 @@ func (c *columns) header(dst []byte, clock string) []byte {
 	}
 	dst = append(append(dst, strings.TrimRight(names, " ")...), '\n')
 	return append(append(dst, strings.TrimRight(units, " ")...), '\n')
+}
+
+// appendCell appends a value in the width of its column; fits is false if the
+// column is too narrow, and only a sign of it stands there.
+func (c *column) appendCell(dst []byte, v *decode.Value, r *decode.Record) (out []byte, fits bool) {
+	start := len(dst)
+	dst = appendShown(dst, v, r)
+	width, after := utf8.RuneCount(dst[start:]), 0
+	if v.State == decode.Number {
+		after = c.afterPoint(dst[start:])
+	}
+	fits = width <= c.width
+	if !fits {
+		dst = append(dst[:start], shortCell(v)...)
+		width, after = len(dst)-start, 0
+	}
+	before := max(0, c.width-width-after)
+	if c.left {
+		return appendBlanks(dst, before), fits
+	}
+	dst = appendBlanks(dst, before)
+	// The blanks go in front.
+	copy(dst[start+before:], dst[start:len(dst)-before])
+	for i := range before {
+		dst[start+i] = ' '
+	}
+	return appendBlanks(dst, after), fits
+}
+
+// appendRow appends a row of cells; an empty cell is blank. note stands behind
+// it.
+func (c *columns) appendRow(dst []byte, ns int64, cells [][]byte, note []byte) []byte {
+	dst = appendStamp(dst, ns, c.dates)
+	end := len(dst) // behind the last that isn't blank
+	for i, cell := range cells {
+		dst = append(dst, "  "...)
+		if len(cell) == 0 {
+			dst = appendBlanks(dst, c.cells[i].width)
+			continue
+		}
+		dst = append(dst, cell...)
+		end = len(dst)
+	}
+	if len(note) > 0 {
+		return append(append(append(dst, "  ! "...), note...), '\n')
+	}
+	dst = bytes.TrimRight(dst[:end], " ")
+	return append(dst, '\n')
 }
 
 func (c *column) padded(text string) string {

@@ -15,10 +15,11 @@ type listItem struct {
 }
 
 // listItems puts the members of arrays together, in the order of their first.
-func listItems(m *decode.Message) []listItem {
+func listItems(m *decode.Message, shown []*decode.Signal) []listItem {
 	var items []listItem
 	byLabel := map[string]int{}
-	for i, s := range m.Signals {
+	for _, s := range shown {
+		i := s.Index - m.Signals[0].Index
 		label := arrayLabel(s.Path)
 		at, known := byLabel[label]
 		if !known || label == s.Path || m.Signals[items[at].signals[0]].Unit.Symbol != s.Unit.Symbol {
@@ -45,11 +46,11 @@ func arrayLabel(path string) string {
 // list writes a frame as names and values.
 func (t *table) list(dst []byte, r *decode.Record) []byte {
 	start := len(dst)
-	dst = append(t.appendTime(dst, r.Frame.Time), "  "...)
+	dst = append(appendStamp(dst, r.Frame.Time, t.dates), "  "...)
 	dst = append(dst, r.Message.Bus...)
 	dst = appendBlanks(dst, t.buses-len(r.Message.Bus)+2)
 	dst = append(dst, r.Message.Model.Name...)
-	indent := t.timeWidth() + 2 + t.buses + 2 + t.names
+	indent := stampWidth(t.dates) + 2 + t.buses + 2 + t.names
 	column := utf8.RuneCount(dst[start:])
 	add := func(item []byte) {
 		need := utf8.RuneCount(item)
@@ -103,11 +104,7 @@ func (t *table) appendItem(item *listItem, r *decode.Record) {
 			between = " "
 		}
 		t.cell = append(t.cell, between...)
-		start := len(t.cell)
-		t.cell = v.Signal.AppendText(t.cell, v, r.Frame)
-		if v.State == decode.Text {
-			t.cell = append(t.cell[:start], printable(t.cell[start:])...)
-		}
+		t.cell = appendShown(t.cell, v, r)
 		if v.State == decode.Number {
 			unit = v.Signal.Unit.Symbol
 		}

@@ -69,3 +69,22 @@ func appendDate(dst []byte, ns int64) []byte {
 	}
 	return time.Unix(0, ns).UTC().AppendFormat(dst, layout)
 }
+
+// appendStamp appends a time as seconds or as a date, in a column of
+// stampWidth.
+func appendStamp(dst []byte, ns int64, dates bool) []byte {
+	start := len(dst)
+	if dates {
+		dst = appendDate(dst, ns)
+	} else {
+		dst = appendTime(dst, ns)
+	}
+	return appendBlanks(dst, stampWidth(dates)-(len(dst)-start))
+}
+
+func stampWidth(dates bool) int {
+	if dates {
+		return len("2006-01-02 15:04:05.000000")
+	}
+	return len("1700000000.000000")
+}

@@ -9,7 +9,7 @@ say "The description of Heron, a delivery van: is it sound?"
 
 say "A stop from 80 km/h on a wet patch: road speed and the four wheels, every 0.25 s"
 "$busloom" decode --map can0=chassis --map can1=powertrain --map can2=body \
-	--step 250ms --from +2 --only 'RoadSpeed.speed on chassis' --only 'WheelSpeeds.wheel*speed' \
+	--step 250ms --from +2 --to +9 --only 'RoadSpeed.speed on chassis' --only 'WheelSpeeds.wheel*speed' \
 	schemas/heron.bus testdata/heron/wet_stop.log.gz
 
 say "Every record of the capture is accounted for"

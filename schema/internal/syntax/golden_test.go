@@ -45,7 +45,7 @@ func TestMistakes(t *testing.T) {
 			tree := Parse(diag.NewFile(filepath.Base(file), text), list)
 			require.Positive(t, list.Count(diag.Error))
 			var b bytes.Buffer
-			diag.Render(&b, list.Sorted(), diag.Style{})
+			diag.Render(&b, list.Sorted(), diag.Style{Notes: true})
 			b.WriteString("\nwhat is left: " + strings.Join(survivors(tree), " ") + "\n")
 			golden(t, strings.TrimSuffix(file, ".bus")+".diag", b.String())
 			_, ok := Format(diag.NewFile(file, text), &diag.List{})

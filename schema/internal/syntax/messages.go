@@ -121,6 +121,8 @@ func (r *reader) tell(at piece, err error, context string) {
 	case context == "message" && want == "(" && i > 0 && r.isWord(at.toks[i-1], "on"):
 		r.report(diag.UnexpectedWord, r.tokSpan(at.toks[i-1]), "the identifier is missing before on", "write it behind the message's name: three hexadecimal digits such as 0x1A0, eight such as 0x18FEF100, or an id form with its fields")
 		return
+	case want == "," && i > 1 && i < len(at.toks) && r.isWord(at.toks[i-2], "profile"):
+		want = "both, alternating, low, nibble or a comma"
 	case want != "}":
 	case context == "crc":
 		want = "polynomial, initial, final, check, reflected or }"

@@ -38,17 +38,16 @@ func (r *reader) mendPoints(inside piece) []*CurvePoint {
 }
 
 // beginOfRaws goes from the last token before a colon back to the first of the
-// raw values.
+// raw values, whole or not.
 func (r *reader) beginOfRaws(at piece, i int) int {
-	for {
-		if i >= 2 && at.toks[i].is(tokNumber) && r.isPunct(at.toks[i-1], "-") && at.toks[i-2].is(tokKeyword) {
-			i -= 2
-		}
-		if i < 2 || !r.isPunct(at.toks[i-1], "..") {
-			return i
-		}
-		i -= 2
+	joins := func(i int) bool { return r.isPunct(at.toks[i], "-") || r.isPunct(at.toks[i], "..") }
+	if !joins(i) && !at.toks[i].is(tokNumber) && !at.toks[i].is(tokKeyword) {
+		return i + 1 // nothing before the colon
 	}
+	for i > 0 && (joins(i-1) || joins(i) && (at.toks[i-1].is(tokNumber) || at.toks[i-1].is(tokKeyword))) {
+		i--
+	}
+	return i
 }
 
 // beforeColons cuts a table where the values before a colon begin, and where a
@@ -338,20 +337,27 @@ func (r *reader) mendSelect(at piece) Item {
 	return s
 }
 
+// tellBranch tells of tokens that are no branch.
+func (r *reader) tellBranch(at piece) {
+	first := at.toks[0]
+	if r.holdsInvalid(at) {
+		return
+	}
+	remedy := "a selection holds branches: when 0 { ... }, and otherwise at the end"
+	if near := nearest(r.tokText(first), branchWords); near != "" {
+		remedy = "did you mean " + near + "?"
+	}
+	r.report(diag.UnexpectedWord, r.tokSpan(first), r.plain(first)+" begins no branch of the selection", remedy)
+}
+
 func (r *reader) mendBranch(s *Select, at piece) {
 	g, err := parse(r, r.parsers.branch, at)
 	if err == nil {
 		r.branch(s, g)
 		return
 	}
-	if first := at.toks[0]; !r.isWord(first, "when", "otherwise") {
-		if !r.holdsInvalid(at) {
-			remedy := "a selection holds branches: when 0 { ... }, and otherwise at the end"
-			if near := nearest(r.tokText(first), wordSet("when", "otherwise")); near != "" {
-				remedy = "did you mean " + near + "?"
-			}
-			r.report(diag.UnexpectedWord, r.tokSpan(first), describe(first, r.tokText(first))+" begins no branch of the selection", remedy)
-		}
+	if !r.isWord(at.toks[0], "when", "otherwise") {
+		r.tellBranch(at)
 		return
 	}
 	open := r.indexOf(at, 0, "{")
@@ -363,7 +369,7 @@ func (r *reader) mendBranch(s *Select, at piece) {
 	if end+1 < len(at.toks) {
 		stray := piece{at.toks[end+1:], at.end}
 		at = piece{at.toks[: end+1 : end+1], at.end}
-		r.report(diag.UnexpectedWord, r.tokSpan(stray.toks[0]), describe(stray.toks[0], r.tokText(stray.toks[0]))+" begins no branch of the selection", "a selection holds branches: when 0 { ... }, and otherwise at the end")
+		r.tellBranch(stray)
 		if g, err := parse(r, r.parsers.branch, at); err == nil {
 			r.branch(s, g)
 			return

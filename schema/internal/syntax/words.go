@@ -8,6 +8,9 @@ var declWords = wordSet("network", "use", "bus", "ecu", "unit", "const", "codes"
 // factWords begin a line of a body that isn't a member.
 var factWords = wordSet("from", "every", "on", "fill", "default", "unused", "holds", "relayed", "replaced", "note", "select")
 
+// branchWords begin a branch of a selection.
+var branchWords = wordSet("when", "otherwise")
+
 // clauseWords begin a clause of a member.
 var clauseWords = wordSet("signed", "sign", "float", "packed", "flag", "bytes", "text", "always", "counter", "checksum",
 	"in", "within", "codes", "states", "initial", "tolerance", "replaced", "note")
