@@ -8,10 +8,26 @@ import (
 )
 
 type jsonSummary struct {
-	From     json.Number        `json:"from"`
-	To       json.Number        `json:"to"`
-	Messages []jsonMessage      `json:"messages"`
-	Never    []jsonNeverMessage `json:"neverSeen,omitempty"`
+	From json.Number `json:"from,omitempty"`
+	To   json.Number `json:"to,omitempty"`
+	// Frames is by class; the numbers add up to the frames that were summed up.
+	Frames      map[string]int64   `json:"frames"`
+	Messages    []jsonMessage      `json:"messages"`
+	Never       []jsonNeverMessage `json:"neverSeen,omitempty"`
+	Undescribed []jsonForeign      `json:"undescribed,omitempty"`
+	Errors      []jsonReport       `json:"errorFrames,omitempty"`
+}
+
+type jsonForeign struct {
+	Interface string `json:"interface"`
+	ID        string `json:"id"`
+	Frames    int64  `json:"frames"`
+}
+
+type jsonReport struct {
+	Interface string `json:"interface"`
+	Report    string `json:"report"`
+	Frames    int64  `json:"frames"`
 }
 
 type jsonNeverMessage struct {
@@ -25,6 +41,7 @@ type jsonMessage struct {
 	Bus              string       `json:"bus"`
 	Message          string       `json:"message"`
 	ID               string       `json:"id"`
+	Family           bool         `json:"family,omitempty"` // of identifiers; ID is the one to send
 	Frames           int64        `json:"frames"`
 	Least            json.Number  `json:"leastPeriod,omitempty"`
 	Mean             json.Number  `json:"meanPeriod,omitempty"`
@@ -35,6 +52,7 @@ type jsonMessage struct {
 	LostSteps        int64        `json:"lostCounterSteps,omitempty"`
 	Short            int64        `json:"shortFrames,omitempty"`
 	Long             int64        `json:"longFrames,omitempty"`
+	Timing           string       `json:"timing,omitempty"`
 	UnknownSelection int64        `json:"unknownSelections,omitempty"`
 	Signals          []jsonSignal `json:"signals"`
 }
@@ -61,12 +79,24 @@ func jsonTime(ns int64) json.Number { return json.Number(appendTime(nil, ns)) }
 
 func (s *summary) appendJSON(dst []byte) []byte {
 	seen, never := s.shown()
-	out := jsonSummary{From: jsonTime(s.first), To: jsonTime(s.last), Messages: []jsonMessage{}}
+	out := jsonSummary{Frames: map[string]int64{}, Messages: []jsonMessage{}}
+	if s.any {
+		out.From, out.To = jsonTime(s.first), jsonTime(s.last)
+	}
+	for c := decode.Decoded; c < decode.NumClasses; c++ {
+		out.Frames[className(c)] = s.classes[c]
+	}
 	for _, m := range seen {
 		out.Messages = append(out.Messages, s.jsonMessage(m))
 	}
 	for _, m := range never {
-		out.Never = append(out.Never, jsonNeverMessage{m.Bus, m.Model.Name, idText(m)})
+		out.Never = append(out.Never, jsonNeverMessage{m.Bus, m.Model.Name, idDigits(m.Model.ID.Send, m.Model.ID.Extended)})
+	}
+	for _, x := range s.foreign() {
+		out.Undescribed = append(out.Undescribed, jsonForeign{s.plan.Interface(x.bus), idDigits(x.id, x.extended), s.undescribed[x]})
+	}
+	for _, x := range s.reports() {
+		out.Errors = append(out.Errors, jsonReport{s.plan.Interface(x.bus), x.text, s.errors[x]})
 	}
 	text, err := json.MarshalIndent(out, "", "  ")
 	if err != nil {
@@ -79,12 +109,12 @@ func (s *summary) appendJSON(dst []byte) []byte {
 func (s *summary) jsonMessage(m *decode.Message) jsonMessage {
 	n := &s.messages[m.Index]
 	j := jsonMessage{
-		Bus: m.Bus, Message: m.Model.Name, ID: idText(m), Frames: n.count, WrongChecksums: n.checksum, BadCounters: n.counter,
-		LostSteps: n.lost, Short: n.short, Long: n.long, UnknownSelection: n.unknownSelection, Signals: []jsonSignal{},
+		Bus: m.Bus, Message: m.Model.Name, ID: idDigits(m.Model.ID.Send, m.Model.ID.Extended), Family: isFamily(m), Frames: n.count, WrongChecksums: n.checksum, BadCounters: n.counter,
+		LostSteps: n.lost, Short: n.short, Long: n.long, UnknownSelection: n.unknownSelection, Timing: n.lateness(m.Model.Timing), Signals: []jsonSignal{},
 	}
 	if n.periods > 0 {
 		j.Least, j.Greatest = json.Number(millis(n.shortest)), json.Number(millis(n.longest))
-		j.Mean = json.Number(fraction(n.last-n.first, n.periods, 1_000_000, 3))
+		j.Mean = json.Number(fraction(n.total, n.periods, 1_000_000, 3))
 	}
 	if p := m.Model.Timing.Period; p > 0 {
 		j.Described = json.Number(millis(int64(p)))

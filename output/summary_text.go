@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math/big"
 	"strings"
+	"unicode/utf8"
 
 	"busloom/decode"
 	"busloom/unit"
@@ -22,12 +23,23 @@ func (s *summary) appendText(dst []byte) []byte {
 	var b strings.Builder
 	seen, never := s.shown()
 	if s.any {
-		fmt.Fprintf(&b, "from %s to %s s: %s s\n", appendTime(nil, s.first), appendTime(nil, s.last), appendTime(nil, s.last-s.first))
+		fmt.Fprintf(&b, "from %s to %s s: %s s; + is seconds after the first\n", appendTime(nil, s.first), appendTime(nil, s.last), appendTime(nil, s.last-s.first))
 	}
+	total := int64(0)
+	for _, n := range s.classes {
+		total += n
+	}
+	fmt.Fprintf(&b, "%d frames = %d decoded", total, s.classes[decode.Decoded])
+	for c := decode.Undescribed; c < decode.NumClasses; c++ {
+		if n := s.classes[c]; n > 0 {
+			fmt.Fprintf(&b, " + %d %s", n, plural(n, className(c)))
+		}
+	}
+	b.WriteByte('\n')
 	for _, m := range seen {
 		n := &s.messages[m.Index]
-		fmt.Fprintf(&b, "\n%s on %s, %s: %d frames%s\n", m.Model.Name, m.Bus, idText(m), n.count, s.periodText(m, n))
-		if notes := n.notes(); notes != "" {
+		fmt.Fprintf(&b, "\n%s on %s, %s: %s%s\n", m.Model.Name, m.Bus, idText(m), frames(n.count), s.periodText(m, n))
+		if notes := n.notes(m); notes != "" {
 			fmt.Fprintf(&b, "  ! %s\n", notes)
 		}
 		s.signalRows(&b, m)
@@ -38,19 +50,35 @@ func (s *summary) appendText(dst []byte) []byte {
 			fmt.Fprintf(&b, "  %s on %s, %s\n", m.Model.Name, m.Bus, idText(m))
 		}
 	}
+	if len(s.undescribed) > 0 {
+		fmt.Fprint(&b, "\nundescribed:\n")
+		for _, x := range s.foreign() {
+			fmt.Fprintf(&b, "  %s %s: %s\n", s.plan.Interface(x.bus), idDigits(x.id, x.extended), frames(s.undescribed[x]))
+		}
+	}
+	if len(s.errors) > 0 {
+		fmt.Fprint(&b, "\nerror frames:\n")
+		for _, x := range s.reports() {
+			fmt.Fprintf(&b, "  %s %s: %s\n", s.plan.Interface(x.bus), x.text, frames(s.errors[x]))
+		}
+	}
 	return append(dst, b.String()...)
 }
 
-func idText(m *decode.Message) string {
-	id := m.Model.ID
-	text := fmt.Sprintf("%03X", id.Send)
-	if id.Extended {
-		text = fmt.Sprintf("%08X", id.Send)
+func frames(n int64) string {
+	if n == 1 {
+		return "1 frame"
 	}
-	for _, f := range id.Fields {
-		if f.Open {
-			return text + " (family)"
-		}
+	return fmt.Sprintf("%d frames", n)
+}
+
+// after is a time as seconds after the first frame.
+func (s *summary) after(ns int64) string { return "+" + string(appendTime(nil, ns-s.first)) }
+
+func idText(m *decode.Message) string {
+	text := idDigits(m.Model.ID.Send, m.Model.ID.Extended)
+	if isFamily(m) {
+		text += " (family)"
 	}
 	return text
 }
@@ -61,14 +89,14 @@ func (s *summary) periodText(m *decode.Message, n *messageSummary) string {
 	if n.periods == 0 {
 		return ""
 	}
-	text := fmt.Sprintf(", every %s / %s / %s ms (least, mean, greatest)", millis(n.shortest), fraction(n.last-n.first, n.periods, 1_000_000, 3), millis(n.longest))
+	text := fmt.Sprintf(", every %s / %s / %s ms (least, mean, greatest)", millis(n.shortest), fraction(n.total, n.periods, 1_000_000, 3), millis(n.longest))
 	if p := m.Model.Timing.Period; p > 0 {
 		text += fmt.Sprintf(", described %s ms", millis(int64(p)))
 	}
 	return text
 }
 
-func (n *messageSummary) notes() string {
+func (n *messageSummary) notes(m *decode.Message) string {
 	var parts []string
 	say := func(count int64, what string) {
 		if count > 0 {
@@ -81,56 +109,71 @@ func (n *messageSummary) notes() string {
 	say(n.short, "frames short")
 	say(n.long, "frames long")
 	say(n.unknownSelection, "unknown selections")
+	if late := n.lateness(m.Model.Timing); late != "" {
+		parts = append(parts, late)
+	}
 	return strings.Join(parts, ", ")
 }
 
 // signalRows writes a signal a line: numbers with their range and greatest
-// step in columns, then words and codes with their counts.
+// step in columns, then words and codes with their counts. Protection is left
+// out: its failures are counted above.
 func (s *summary) signalRows(b *strings.Builder, m *decode.Message) {
-	rows := [][]string{{"", "numbers", "least", "greatest", "unit", "greatest step", "at [s]"}}
+	rows := [][]string{{"", "numbers", "least", "at", "greatest", "at", "unit", "greatest step", "at"}}
 	rest := []string{""}
-	for _, sig := range m.Signals {
+	for _, sig := range shown(m) {
 		x := &s.signals[sig.Index]
-		row := make([]string, 7)
+		row := make([]string, len(rows[0]))
 		row[0] = sig.Path
 		if x.numbers > 0 {
 			row[1] = fmt.Sprint(x.numbers)
-			row[2] = string(sig.AppendNumber(nil, &x.min))
-			row[3] = string(sig.AppendNumber(nil, &x.max))
-			row[4] = sig.Unit.Symbol
+			row[2], row[3] = string(sig.AppendNumber(nil, &x.min)), s.after(x.minAt)
+			row[4], row[5] = string(sig.AppendNumber(nil, &x.max)), s.after(x.maxAt)
+			row[6] = sig.Unit.Symbol
 			if x.steps {
-				row[5] = sig.Difference(&x.to, &x.from)
-				row[6] = string(appendTime(nil, x.stepAt))
+				row[7], row[8] = sig.Difference(&x.to, &x.from), s.after(x.stepAt)
 			}
 		}
 		rows = append(rows, row)
 		rest = append(rest, x.others(sig))
 	}
-	width := make([]int, 7)
-	for _, row := range rows {
-		for i, cell := range row {
-			width[i] = max(width[i], len(cell))
+	const unitColumn = 6
+	width := make([]int, len(rows[0]))
+	numbers := false
+	for _, row := range rows[1:] {
+		numbers = numbers || row[1] != ""
+	}
+	for i, row := range rows {
+		if i == 0 && !numbers {
+			continue
+		}
+		for c, cell := range row {
+			width[c] = max(width[c], utf8.RuneCountInString(cell))
 		}
 	}
 	for i, row := range rows {
-		var line strings.Builder
-		fmt.Fprintf(&line, "  %-*s", width[0], row[0])
-		for c := 1; c < len(row); c++ {
-			if c == 4 {
-				fmt.Fprintf(&line, "  %-*s", width[c], row[c])
-			} else {
-				fmt.Fprintf(&line, "  %*s", width[c], row[c])
+		if i == 0 && !numbers {
+			continue
+		}
+		line := "  " + padText(row[0], width[0], true)
+		if i == 0 || row[1] != "" {
+			for c := 1; c < len(row); c++ {
+				line += "  " + padText(row[c], width[c], c == unitColumn)
 			}
 		}
-		text := line.String()
 		if rest[i] != "" {
-			if strings.TrimSpace(text[2+width[0]:]) == "" {
-				text = text[:2+width[0]]
-			}
-			text += "  " + rest[i]
+			line += "  " + rest[i]
 		}
-		fmt.Fprintln(b, strings.TrimRight(text, " "))
+		fmt.Fprintln(b, strings.TrimRight(line, " "))
 	}
+}
+
+func padText(text string, width int, left bool) string {
+	blanks := strings.Repeat(" ", max(0, width-utf8.RuneCountInString(text)))
+	if left {
+		return text + blanks
+	}
+	return blanks + text
 }
 
 // others lists words, codes and whatever else was no number, with counts.

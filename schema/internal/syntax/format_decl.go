@@ -48,18 +48,15 @@ func (f *formatter) upTo(t *File, offset int) {
 
 // texts writes the quoted texts of a head; further ones go on below.
 func (f *formatter) texts(t Text) string {
-	if !t.Given {
-		return ""
-	}
-	out := ""
+	var out strings.Builder
 	for i, part := range t.Parts {
 		if i == 0 {
-			out += " " + quote(part)
+			out.WriteString(" " + quote(part))
 		} else {
-			out += "\n" + f.indent() + indentation + indentation + quote(part)
+			out.WriteString("\n" + f.indent() + indentation + indentation + quote(part))
 		}
 	}
-	return out
+	return out.String()
 }
 
 func (f *formatter) declaration(d Decl) {

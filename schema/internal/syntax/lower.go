@@ -96,6 +96,9 @@ func unquote(raw string) string {
 
 // quote is the inverse of unquote.
 func quote(text string) string {
+	if !strings.ContainsAny(text, "\\\"\n") {
+		return `"` + text + `"`
+	}
 	return `"` + strings.NewReplacer(`\`, `\\`, `"`, `\"`, "\n", `\n`).Replace(text) + `"`
 }
 
