@@ -37,11 +37,12 @@ func Accounting(t *decode.Totals, skipped int64) string {
 		sum.UnknownSelection += m.UnknownSelection
 	}
 	if t.ProtectionFailures() > 0 {
-		fmt.Fprintf(&b, "protection failures: %d wrong checksums, %d counters out of range, %d repeated, %d gaps of %d lost steps\n",
-			sum.ChecksumBad, sum.CounterBad, sum.CounterRepeated, sum.CounterLost, sum.LostSteps)
+		fmt.Fprintf(&b, "protection failures: %s, %s out of range, %d repeated, %s of %s\n",
+			counted(sum.ChecksumBad, "wrong checksum", "wrong checksums"), counted(sum.CounterBad, "counter", "counters"),
+			sum.CounterRepeated, counted(sum.CounterLost, "gap", "gaps"), counted(sum.LostSteps, "lost step", "lost steps"))
 	}
 	if sum.UnknownSelection > 0 {
-		fmt.Fprintf(&b, "unknown selector values: %d frames\n", sum.UnknownSelection)
+		fmt.Fprintf(&b, "unknown selector values: %s\n", frames(sum.UnknownSelection))
 	}
 	if len(t.Unmapped) > 0 {
 		var names []string
@@ -59,4 +60,11 @@ func plural(n int64, word string) string {
 		return "error frames"
 	}
 	return word
+}
+
+func counted(n int64, one, more string) string {
+	if n == 1 {
+		more = one
+	}
+	return fmt.Sprintf("%d %s", n, more)
 }

@@ -68,7 +68,7 @@ func (c *changes) Record(dst []byte, r *decode.Record) []byte {
 	if r.Class != decode.Decoded {
 		return c.to.Record(dst, r)
 	}
-	values := c.record.Values[:0]
+	values, changed := c.record.Values[:0], false
 	lasts := c.lastOf(r.Message, r.Frame.ID)
 	for i := range r.Values {
 		v := &r.Values[i]
@@ -80,13 +80,15 @@ func (c *changes) Record(dst []byte, r *decode.Record) []byte {
 			last.text = append(last.text[:0], c.text...)
 		}
 		last.state, last.raw = v.State, v.Raw
-		if !same {
+		// The fields of an identifier say whose values the others are.
+		if !same || v.Signal.Model == nil {
 			values = append(values, *v)
 		}
+		changed = changed || !same
 	}
 	c.record = *r
 	c.record.Values = values
-	if len(values) == 0 && !wrong(r) {
+	if !changed && !wrong(r) {
 		return dst
 	}
 	return c.to.Record(dst, &c.record)

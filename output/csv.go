@@ -11,7 +11,6 @@ import (
 // unit, word, code, check. Everything that is the same in each row of a signal
 // is prepared, so that a row is four copies and a number.
 type csvWriter struct {
-	plan  *decode.Plan
 	rows  []csvRow // by Signal.Index
 	clock clock
 	time  [chunk]byte
@@ -41,7 +40,7 @@ const roomForRow = 8 * chunk
 const csvEnd = "\r\n"
 
 func newCSV(plan *decode.Plan) *csvWriter {
-	w := &csvWriter{plan: plan, rows: make([]csvRow, len(plan.Signals))}
+	w := &csvWriter{rows: make([]csvRow, len(plan.Signals))}
 	for i, s := range plan.Signals {
 		row := &w.rows[i]
 		head := "," + csvField(s.Message.Bus) + "," + csvField(s.Message.Model.Name) + "," + csvField(s.Path) + ","
@@ -71,7 +70,7 @@ func csvField(text string) string {
 }
 
 // Fork implements Forker: the rows are shared.
-func (w *csvWriter) Fork() Formatter { return &csvWriter{plan: w.plan, rows: w.rows} }
+func (w *csvWriter) Fork() Formatter { return &csvWriter{rows: w.rows} }
 
 func (w *csvWriter) Header(dst []byte) []byte {
 	return append(dst, "time,bus,message,signal,value,unit,word,code,check"+csvEnd...)

@@ -211,8 +211,8 @@ func TestAccounting(t *testing.T) {
 	totals.Malformed = 3
 	require.Equal(t, `24 records read = 15 decoded + 1 undescribed + 1 remote + 1 error frame + 1 unmapped + 3 malformed + 2 outside of the time window
 of the decoded: 1 shorter and 1 longer than described
-protection failures: 1 wrong checksums, 1 counters out of range, 1 repeated, 1 gaps of 3 lost steps
-unknown selector values: 1 frames
+protection failures: 1 wrong checksum, 1 counter out of range, 1 repeated, 1 gap of 3 lost steps
+unknown selector values: 1 frame
 no bus is tied to can9 (1): use --map INTERFACE=BUS
 `, Accounting(totals, 2))
 }

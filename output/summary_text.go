@@ -65,12 +65,7 @@ func (s *summary) appendText(dst []byte) []byte {
 	return append(dst, b.String()...)
 }
 
-func frames(n int64) string {
-	if n == 1 {
-		return "1 frame"
-	}
-	return fmt.Sprintf("%d frames", n)
-}
+func frames(n int64) string { return counted(n, "frame", "frames") }
 
 // after is a time as seconds after the first frame.
 func (s *summary) after(ns int64) string { return "+" + string(appendTime(nil, ns-s.first)) }
@@ -98,17 +93,17 @@ func (s *summary) periodText(m *decode.Message, n *messageSummary) string {
 
 func (n *messageSummary) notes(m *decode.Message) string {
 	var parts []string
-	say := func(count int64, what string) {
-		if count > 0 {
-			parts = append(parts, fmt.Sprintf("%d %s", count, what))
+	say := func(n int64, one, more string) {
+		if n > 0 {
+			parts = append(parts, counted(n, one, more))
 		}
 	}
-	say(n.checksum, "wrong checksums")
-	say(n.counter, "counters repeated or out of range")
-	say(n.lost, "counter steps lost")
-	say(n.short, "frames short")
-	say(n.long, "frames long")
-	say(n.unknownSelection, "unknown selections")
+	say(n.checksum, "wrong checksum", "wrong checksums")
+	say(n.counter, "counter repeated or out of range", "counters repeated or out of range")
+	say(n.lost, "counter step lost", "counter steps lost")
+	say(n.short, "short frame", "short frames")
+	say(n.long, "long frame", "long frames")
+	say(n.unknownSelection, "unknown selection", "unknown selections")
 	if late := n.lateness(m.Model.Timing); late != "" {
 		parts = append(parts, late)
 	}
@@ -194,5 +189,8 @@ func (x *signalSummary) others(s *decode.Signal) string {
 	say("missing", x.missing)
 	say("without a value", x.nothing)
 	say("texts", x.texts)
+	if len(parts) == 0 && x.numbers == 0 {
+		return "never there"
+	}
 	return strings.Join(parts, ", ")
 }

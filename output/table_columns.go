@@ -54,13 +54,13 @@ func (c *columns) total() int {
 }
 
 func newColumn(s *decode.Signal, parts []string, fullCodes bool) column {
-	c := column{parts: parts, unit: s.Unit.Symbol, left: !s.IsNumber(), point: s.Decimals}
+	c := column{parts: parts, unit: s.Unit.Symbol, left: !s.IsNumber(), point: decimals(s)}
 	c.width = max(len(c.parts[len(c.parts)-1]), utf8.RuneCountInString(c.unit))
 	for _, word := range s.Words {
 		c.width = max(c.width, utf8.RuneCountInString(word))
 	}
 	if s.IsNumber() {
-		c.width = max(c.width, numberWidth(s))
+		c.width = max(c.width, numberWidth(s, c.point))
 	}
 	if s.Model == nil {
 		return c
@@ -86,21 +86,31 @@ const longestText = 24
 
 // numberWidth is the room for any number of a signal, with the point in one
 // place.
-func numberWidth(s *decode.Signal) int {
-	if !s.Scaled {
+func numberWidth(s *decode.Signal, decimals int) int {
+	if s.Model != nil && s.Model.Kind == schema.Float {
 		return len("not finite")
 	}
 	point := 0
-	if s.Decimals > 0 {
-		point = 1 + s.Decimals
+	if decimals > 0 {
+		point = 1 + decimals
 	}
 	whole := 1
 	for _, end := range extremes(s) {
-		text := unit.FormatRat(end, s.Decimals)
-		text, _, _ = strings.Cut(text, ".")
+		text, _, _ := strings.Cut(unit.FormatRat(end, decimals), ".")
 		whole = max(whole, len(text))
 	}
 	return whole + point
+}
+
+// decimals is how many digits after the point a signal's numbers can have; 0
+// for floats, which aren't aligned.
+func decimals(s *decode.Signal) int {
+	if s.Scaled || s.Model == nil || s.Model.Affine == nil || s.Model.Kind == schema.Float {
+		return s.Decimals
+	}
+	a, _ := unit.FiniteDecimals(s.Model.Affine.A)
+	b, _ := unit.FiniteDecimals(s.Model.Affine.B)
+	return min(max(a, b), unit.MaxDecimals)
 }
 
 // extremes are values between which all numbers of a signal lie.

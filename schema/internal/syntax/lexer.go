@@ -3,6 +3,7 @@ package syntax
 import (
 	"bytes"
 	"io"
+	"unicode"
 	"unicode/utf8"
 
 	"github.com/alecthomas/participle/v2/lexer"
@@ -221,6 +222,10 @@ func (s *scanner) comment() {
 // glued to it.
 func (s *scanner) word() {
 	end := s.endOfWord(s.at)
+	if s.foreignLetter(end) {
+		s.invalid()
+		return
+	}
 	switch string(s.text[s.at:end]) {
 	case "at", "is", "ones", "raw":
 		s.emit(tokKeyword, end)
@@ -335,17 +340,35 @@ func (s *scanner) emitInvalid(end int) {
 	s.bad = append(s.bad, badToken{tok: s.toks[len(s.toks)-1]})
 }
 
-// invalid takes all bytes in a row that begin no token.
+// invalid takes all bytes in a row that begin no token, and whole words with
+// letters that names can't have.
 func (s *scanner) invalid() {
-	end := s.at + 1
+	end := s.at
 	for end < len(s.text) {
 		c := s.text[end]
-		if c == ' ' || c == '\t' || c == '\r' || c == '\n' || c == '"' || isWordByte(c) || isPunctByte(c) || s.unitBegins(end) {
-			break
+		switch {
+		case s.foreignLetter(end):
+			_, n := utf8.DecodeRune(s.text[end:])
+			end = s.endOfWord(end + n)
+		case isWordByte(c) && end == s.at:
+			end = s.endOfWord(end)
+		case c == ' ', c == '\t', c == '\r', c == '\n', c == '"', isWordByte(c), isPunctByte(c), end > s.at && s.unitBegins(end):
+			s.emitInvalid(end)
+			return
+		default:
+			end++
 		}
-		end++
 	}
 	s.emitInvalid(end)
+}
+
+// foreignLetter reports whether a letter stands here that names can't have.
+func (s *scanner) foreignLetter(at int) bool {
+	if at >= len(s.text) || s.text[at] < utf8.RuneSelf || s.unitBegins(at) {
+		return false
+	}
+	r, _ := utf8.DecodeRune(s.text[at:])
+	return unicode.IsLetter(r)
 }
 
 // unitBegins reports whether a byte can begin a name in a unit.

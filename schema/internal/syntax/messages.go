@@ -6,6 +6,7 @@ import (
 	"regexp"
 	"sort"
 	"strings"
+	"unicode"
 	"unicode/utf8"
 
 	"github.com/alecthomas/participle/v2"
@@ -37,7 +38,8 @@ func (p *parser) reportBad(bad []badToken) {
 				what = "this sign is"
 			}
 			remedy := "remove it; texts go in quotes, comments begin with //"
-			if r, _ := utf8.DecodeRuneInString(text); r > 0x7f {
+			if strings.ContainsFunc(text, unicode.IsLetter) {
+				what = "this word has letters that are"
 				remedy = "names are made of the letters a to z, digits and _; anything can stand in a text in quotes or behind //"
 			}
 			p.found.Report(diag.Unreadable, span, what+" no part of the language", remedy)

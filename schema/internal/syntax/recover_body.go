@@ -200,6 +200,8 @@ func (r *reader) beginsItem(in piece, i int, inMember bool) bool {
 	case t.is(tokGroup):
 		// wheel[front_left].speed is a path behind such words.
 		return !r.isWord(prev, "by", "select", "codes", "states", "over", "counter", "default", "holds") && !(prev.is(tokPunct) && !r.isPunct(prev, "}"))
+	case t.is(tokInvalid):
+		return r.beginsLine(in, i)
 	case t.is(tokKeyword):
 		return r.beginsLine(in, i) && r.isKeywordName(in, i)
 	case !t.is(tokWord) || !r.beginsLine(in, i) || prev.is(tokPunct) && !r.isPunct(prev, "}") && !r.isPunct(prev, "]") && !r.isPunct(prev, ")"):
