@@ -51,3 +51,13 @@ func appendCheck(dst []byte, r *decode.Record, between string) []byte {
 
 // phrases joins what is wrong in CSV and in the table.
 const phrases = "; "
+
+// idle reports whether a decoded record has nothing to show: nothing of its
+// message is wanted, or a selection left out what is, and nothing is wrong. A
+// message without signals shows that it came.
+func idle(r *decode.Record) bool {
+	if !r.Message.Wanted {
+		return true
+	}
+	return len(r.Values) == 0 && len(r.Message.Signals) > 0 && !wrong(r)
+}

@@ -68,7 +68,7 @@ func (w *jsonLines) Trailer(dst []byte) []byte { return dst }
 func (w *jsonLines) Record(dst []byte, r *decode.Record) []byte {
 	switch r.Class {
 	case decode.Decoded:
-		if len(r.Values) == 0 && !r.Message.Wanted {
+		if idle(r) {
 			return dst
 		}
 		return w.decoded(dst, r)

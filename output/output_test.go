@@ -31,6 +31,8 @@ func TestGolden(t *testing.T) {
 		{"table_columns_changes", "table", wheels, Options{Changes: true}},
 		{"table_numbers", "table", []string{"Numbers"}, Options{}},
 		{"table_protection_only", "table", []string{"Wheels.sum"}, Options{}},
+		{"table_selection", "table", []string{"Pages.low"}, Options{}},
+		{"jsonl_selection", "jsonl", []string{"Pages.low"}, Options{}},
 		{"table_step", "table", []string{"Wheels", "Pages on *"}, Options{Step: 50 * time.Millisecond}},
 		{"wide", "wide", []string{"Wheels", "Pages.low"}, Options{}},
 		{"wide_step", "wide", []string{"Wheels.wheel*", "Pages.low"}, Options{Step: 20 * time.Millisecond}},

@@ -106,7 +106,7 @@ func (t *table) Trailer(dst []byte) []byte { return dst }
 
 func (t *table) Record(dst []byte, r *decode.Record) []byte {
 	if r.Class == decode.Decoded {
-		if !r.Message.Wanted {
+		if idle(r) {
 			return dst
 		}
 		t.spread(r)

@@ -158,18 +158,19 @@ type gBody struct {
 }
 
 type gItem struct {
-	Member   *gMember   `parser:"(   @@"`
-	Group    *gGroup    `parser:"  | @@"`
-	Select   *gSelect   `parser:"  | @@"`
-	From     *gFrom     `parser:"  | @@"`
-	Timing   *gTiming   `parser:"  | @@"`
-	Unused   *gUnused   `parser:"  | @@"`
-	Fill     *gFill     `parser:"  | @@"`
-	Default  *gDefault  `parser:"  | @@"`
-	Holds    *gHolds    `parser:"  | @@"`
-	Relayed  *gRelayed  `parser:"  | @@"`
-	Replaced *gReplaced `parser:"  | @@"`
-	Note     *gNote     `parser:"  | @@ )"`
+	Begins   gItemBegins `parser:"@@"`
+	Member   *gMember    `parser:"(   @@"`
+	Group    *gGroup     `parser:"  | @@"`
+	Select   *gSelect    `parser:"  | @@"`
+	From     *gFrom      `parser:"  | @@"`
+	Timing   *gTiming    `parser:"  | @@"`
+	Unused   *gUnused    `parser:"  | @@"`
+	Fill     *gFill      `parser:"  | @@"`
+	Default  *gDefault   `parser:"  | @@"`
+	Holds    *gHolds     `parser:"  | @@"`
+	Relayed  *gRelayed   `parser:"  | @@"`
+	Replaced *gReplaced  `parser:"  | @@"`
+	Note     *gNote      `parser:"  | @@ )"`
 }
 
 type gMember struct {
@@ -179,31 +180,29 @@ type gMember struct {
 	Text    gTexts     `parser:"@@"`
 }
 
-// gClause is any clause of a member, the usual ones first.
+// gClause is any clause of a member, the usual ones first. Begins keeps its
+// first token, so that most clauses need no more than their word to be told
+// apart.
 type gClause struct {
-	Word      token      `parser:"(   @\"=\""`
-	Expr      *gExpr     `parser:"    @@"`
-	Within    *gWithin   `parser:"  | @@"`
-	Table     *gUsed     `parser:"  | @@"`
-	Kind      *gKind     `parser:"  | @@"`
-	InWord    token      `parser:"  | @\"in\":Word"`
-	In        *gUnitRef  `parser:"    @@"`
-	Initial   *gInitial  `parser:"  | @@"`
-	TolWord   token      `parser:"  | @\"tolerance\":Word"`
-	Tolerance *gQuantity `parser:"    @@"`
-	Replaced  *gReplaced `parser:"  | @@"`
-	Note      *gNote     `parser:"  | @@ )"`
+	Begins    gClauseBegins `parser:"@@"`
+	Expr      *gExpr        `parser:"(   \"=\" @@"`
+	Within    *gWithin      `parser:"  | \"within\":Word @@"`
+	Table     *gUsed        `parser:"  | ( \"codes\":Word | \"states\":Word ) @@"`
+	Initial   *gInitial     `parser:"  | \"initial\":Word @@"`
+	In        *gUnitRef     `parser:"  | \"in\":Word @@"`
+	Tolerance *gQuantity    `parser:"  | \"tolerance\":Word @@"`
+	Replaced  *gPath        `parser:"  | \"replaced\":Word \"by\":Word @@"`
+	Kind      *gKind        `parser:"  | @@"`
+	Note      *gNote        `parser:"  | @@ )"`
 }
 
 type gWithin struct {
-	Word token     `parser:"@\"within\":Word"`
 	Low  gQuantity `parser:"@@ \"..\""`
 	High gQuantity `parser:"@@"`
 }
 
-// gUsed is a member's codes or states.
+// gUsed is a member's codes or states, behind that word.
 type gUsed struct {
-	Word    token     `parser:"@( \"codes\":Word | \"states\":Word )"`
 	Open    token     `parser:"(   @\"{\""`
 	Entries []*gEntry `parser:"    @@*"`
 	Close   token     `parser:"    @\"}\""`
@@ -211,7 +210,6 @@ type gUsed struct {
 }
 
 type gInitial struct {
-	Word  token      `parser:"@\"initial\":Word"`
 	Name  token      `parser:"(   @Word"`
 	Value *gQuantity `parser:"  | @@ )"`
 }

@@ -302,6 +302,31 @@ func (g *gUnitRef) Parse(lex *lexer.PeekingLexer) error {
 	}
 }
 
+// gClauseBegins and gItemBegins take nothing from the text. They spare the library the trial
+// of every alternative where none can begin, which is at the end of each member
+// and of each body.
+type (
+	gClauseBegins struct{ word token }
+	gItemBegins   struct{}
+)
+
+// Parse implements participle.Parseable.
+func (g *gClauseBegins) Parse(lex *lexer.PeekingLexer) error {
+	if t := lex.Peek(); isPunct(t, "=") || t.Type == tokWord && clauseWords[t.Value] {
+		g.word = *t
+		return nil
+	}
+	return participle.NextMatch
+}
+
+// Parse implements participle.Parseable.
+func (*gItemBegins) Parse(lex *lexer.PeekingLexer) error {
+	if t := lex.Peek(); t.Type == tokMember || t.Type == tokGroup || t.Type == tokWord && factWords[t.Value] {
+		return nil
+	}
+	return participle.NextMatch
+}
+
 func isPunct(t *token, values ...string) bool {
 	if t.Type != tokPunct {
 		return false

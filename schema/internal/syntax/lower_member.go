@@ -37,20 +37,21 @@ func (l *lowering) clauses(m *Member, clauses []*gClause) {
 	}
 	var formula diag.Span
 	for _, c := range clauses {
+		word := l.span(&c.Begins.word)
 		switch {
 		case c.Expr != nil:
 			x := l.expr(c.Expr)
-			if once("the formula", l.span(&c.Word).To(x.ExprSpan())) {
+			if once("the formula", word.To(x.ExprSpan())) {
 				m.Expr, formula = x, seen["the formula"]
 			}
 		case c.In != nil:
 			u := l.unitRef(c.In)
-			if once("in", l.span(&c.InWord).To(u.Span)) {
+			if once("in", word.To(u.Span)) {
 				m.In = &u
 			}
 		case c.Within != nil:
 			w := &WithinClause{Low: l.quantity(&c.Within.Low), High: l.quantity(&c.Within.High)}
-			w.Span = l.span(&c.Within.Word).To(w.High.Span)
+			w.Span = word.To(w.High.Span)
 			if once("within", w.Span) {
 				m.Within = w
 			}
@@ -58,7 +59,7 @@ func (l *lowering) clauses(m *Member, clauses []*gClause) {
 			if c.Table.Path == nil {
 				m.Span = m.Span.To(l.span(&c.Table.Close))
 			}
-			if t := l.used(c.Table); once(c.Table.Word.Value, t.Span) {
+			if t := l.used(&c.Begins.word, c.Table); once(c.Begins.word.Value, t.Span) {
 				if m.Table != nil {
 					l.problems.Report(diag.RepeatedClause, t.Span, m.Name.Text+" has codes and states", "keep states, and list the codes in that table: a table of states has codes too").
 						Also(m.Table.Span, "the other table")
@@ -67,17 +68,17 @@ func (l *lowering) clauses(m *Member, clauses []*gClause) {
 				m.Table = t
 			}
 		case c.Initial != nil:
-			if i := l.initial(c.Initial); once("initial", i.Span) {
+			if i := l.initial(word, c.Initial); once("initial", i.Span) {
 				m.Initial = i
 			}
 		case c.Tolerance != nil:
 			q := l.quantity(c.Tolerance)
-			if once("tolerance", l.span(&c.TolWord).To(q.Span)) {
+			if once("tolerance", word.To(q.Span)) {
 				m.Tolerance = &q
 			}
 		case c.Replaced != nil:
-			path := l.path(&c.Replaced.Path)
-			if once("replaced by", l.span(&c.Replaced.Word).To(path.Span)) {
+			path := l.path(c.Replaced)
+			if once("replaced by", word.To(path.Span)) {
 				m.Replaced = &path
 			}
 		case c.Note != nil:
@@ -146,8 +147,8 @@ func (m *Member) tableSpan() diag.Span {
 	return m.Table.Span
 }
 
-func (l *lowering) used(g *gUsed) *TableClause {
-	t := &TableClause{States: g.Word.Value == "states", Span: l.span(&g.Word)}
+func (l *lowering) used(word *token, g *gUsed) *TableClause {
+	t := &TableClause{States: word.Value == "states", Span: l.span(word)}
 	if g.Path != nil {
 		path := l.path(g.Path)
 		t.Path = &path
@@ -161,8 +162,8 @@ func (l *lowering) used(g *gUsed) *TableClause {
 	return t
 }
 
-func (l *lowering) initial(g *gInitial) *InitialClause {
-	i := &InitialClause{Span: l.span(&g.Word)}
+func (l *lowering) initial(word diag.Span, g *gInitial) *InitialClause {
+	i := &InitialClause{Span: word}
 	if g.Value != nil {
 		i.Quantity = l.optionalQuantity(g.Value)
 		i.Span = i.Span.To(i.Quantity.Span)

@@ -66,6 +66,7 @@ var inWords = map[string]string{
 	"GChoice": "a raw value or a state such as 0, 1..3 or off", "GID": "an identifier such as 0x1A0, or an id form with its fields",
 	"GFeed": "what the checksum runs over, such as bytes 0..6 or 0x23", "GBody": "{", "GIDField": "a field and its value, such as priority 3",
 	"GIDFormField": "a field and its width, such as priority 3", "GWait": "at least ... apart, or lost after ...",
+	"GInitial": "a quantity, a state or a code", "GUsed": "a table's name, or a table in braces", "GWithin": "a range such as 0..300 km/h",
 	"GItem": "a member or a fact", "GClause": "a clause", "GBranch": "when or otherwise", "GDecl": "a declaration",
 }
 
