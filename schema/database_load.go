@@ -476,7 +476,7 @@ func (l *loader) checkSelectors(m *Message) error {
 				return fmt.Errorf("signal %s: its selector %s may be absent", s.Name, c.Selector.Name)
 			}
 			for j, outer := range c.Selector.When {
-				if outer.Selector != s.When[j].Selector {
+				if c := s.When[j]; outer.Selector != c.Selector || outer.Not != c.Not || !slices.Equal(outer.Values, c.Values) {
 					return fmt.Errorf("signal %s: its selector %s may be absent", s.Name, c.Selector.Name)
 				}
 			}
