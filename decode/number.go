@@ -1,6 +1,7 @@
 package decode
 
 import (
+	"cmp"
 	"math"
 	"math/big"
 	"sort"
@@ -299,14 +300,12 @@ func (s *Signal) pieceOf(x *big.Int) *line {
 
 // Compare orders two numbers of the signal: -1, 0 or 1.
 func (s *Signal) Compare(v, w *Value) int {
-	if s.Scaled {
-		switch {
-		case v.Num < w.Num:
-			return -1
-		case v.Num > w.Num:
-			return 1
-		}
-		return 0
+	switch {
+	case s.Scaled:
+		return cmp.Compare(v.Num, w.Num)
+	case s.kind == schema.Float:
+		// The conversion only rises or only falls.
+		return cmp.Compare(bits.Float(v.Raw, s.width), bits.Float(w.Raw, s.width)) * s.line.a.Sign()
 	}
 	return s.exactValue(v).Cmp(s.exactValue(w))
 }
@@ -318,17 +317,15 @@ func (s *Signal) Difference(v, w *Value) string {
 	return s.format(d)
 }
 
-// CompareDistance orders |a-b| against |c-d|.
+// CompareDistance orders |a-b| against |c-d|. For floats the differences are
+// those of floating point.
 func (s *Signal) CompareDistance(a, b, c, d *Value) int {
-	if s.Scaled {
-		x, y := distance(a.Num, b.Num), distance(c.Num, d.Num)
-		switch {
-		case x < y:
-			return -1
-		case x > y:
-			return 1
-		}
-		return 0
+	switch {
+	case s.Scaled:
+		return cmp.Compare(distance(a.Num, b.Num), distance(c.Num, d.Num))
+	case s.kind == schema.Float:
+		gap := func(v, w *Value) float64 { return math.Abs(bits.Float(v.Raw, s.width) - bits.Float(w.Raw, s.width)) }
+		return cmp.Compare(gap(a, b), gap(c, d))
 	}
 	x := new(big.Rat).Sub(s.exactValue(a), s.exactValue(b))
 	y := new(big.Rat).Sub(s.exactValue(c), s.exactValue(d))

@@ -1,6 +1,7 @@
 package decode
 
 import (
+	"math"
 	"strconv"
 	"unicode/utf8"
 
@@ -92,10 +93,10 @@ func appendFloat(dst []byte, raw uint64, width int) []byte {
 	}
 	switch width {
 	case 16:
-		// Every half is a single; find the fewest digits that read back.
-		for n := range 6 {
-			text := strconv.AppendFloat(nil, x, 'e', n, 64)
-			if y, err := strconv.ParseFloat(string(text), 64); err == nil && bits.PutFloat(y, 16) == raw {
+		// The fewest digits that read back to the same half.
+		var buf [32]byte
+		for n := range 5 {
+			if y := readBack(strconv.AppendFloat(buf[:0], x, 'e', n, 64)); bits.PutFloat(y, 16) == raw {
 				return strconv.AppendFloat(dst, y, 'f', -1, 64)
 			}
 		}
@@ -104,4 +105,35 @@ func appendFloat(dst []byte, raw uint64, width int) []byte {
 		return strconv.AppendFloat(dst, x, 'f', -1, 32)
 	}
 	return strconv.AppendFloat(dst, x, 'f', -1, 64)
+}
+
+// readBack reads d.ddde±xx of at most five digits, as halves have them; digits
+// and power are exact in floating point, so the result is the nearest.
+func readBack(text []byte) float64 {
+	digits, power, sign := 0.0, 0, 1.0
+	point := false
+	for i, c := range text {
+		switch {
+		case c == '-':
+			sign = -1
+		case c == '.':
+			point = true
+		case c == 'e':
+			exponent := int(text[i+2]-'0')*10 + int(text[i+3]-'0')
+			if text[i+1] == '-' {
+				exponent = -exponent
+			}
+			power += exponent
+			if power < 0 {
+				return sign * digits / math.Pow10(-power)
+			}
+			return sign * digits * math.Pow10(power)
+		default:
+			digits = digits*10 + float64(c-'0')
+			if point {
+				power--
+			}
+		}
+	}
+	return sign * digits
 }

@@ -799,7 +799,8 @@ func loadSelect(d *dbSelect, signals map[string]*Signal, placed map[*Signal]bool
 	if s.Selector, err = find(signals, "signal", d.Selector); err != nil {
 		return nil, fmt.Errorf("select: %w", err)
 	}
-	if s.Selector.Width > 64 || s.Selector.Kind == Float {
+	switch s.Selector.Kind {
+	case Float, TextASCII, TextUTF8, Bytes, Checksum:
 		return nil, fmt.Errorf("select: %s can't select", d.Selector)
 	}
 	var ok bool
