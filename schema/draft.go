@@ -53,7 +53,6 @@ type block struct {
 	unused   []unusedRuns
 	values   []RawRange // of the selector; of all other branches for otherwise
 	negated  bool
-	model    *Branch
 	whenDone bool
 	choices  []Choice
 }
@@ -75,7 +74,6 @@ type selection struct {
 	els      *block
 	state    evalState // of the search for rings
 	broken   bool
-	model    *Select
 }
 
 // member is one value of a draft.

@@ -254,7 +254,7 @@ func (c *compiler) unknown(src *source, space namespace, prefix string, name syn
 			Also(sym.name.Span, "declared here")
 		return
 	}
-	remedy := fmt.Sprintf("declare it, or use the file that declares it")
+	remedy := "declare it, or use the file that declares it"
 	if near := c.nearest(name.Text, c.visibleNames(src, space, prefix)); near != "" {
 		remedy = "did you mean " + near + "?"
 	}
