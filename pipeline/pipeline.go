@@ -113,7 +113,10 @@ func Run(ctx context.Context, c Config) Result {
 			c.Progress(c.Source.Counts())
 		}
 		if err != nil {
-			if !errors.Is(err, io.EOF) {
+			switch {
+			case ctx.Err() != nil:
+				res.Interrupted = true
+			case !errors.Is(err, io.EOF):
 				res.Read = err
 			}
 			break

@@ -115,7 +115,7 @@ func runDecode(ctx context.Context, std *streams, f *decodeFlags, description st
 	if err != nil {
 		return usageError("%v", err)
 	}
-	source, err := openCaptures(std, f, captures)
+	source, err := openCaptures(ctx, std, f, captures)
 	if err != nil {
 		return err
 	}
@@ -174,7 +174,7 @@ func describeWrite(path string, err error) error {
 
 // openCaptures opens the files one after the other as one source; malformed
 // records are told on standard error, the first few one by one.
-func openCaptures(std *streams, f *decodeFlags, paths []string) (*capture.Chain, error) {
+func openCaptures(ctx context.Context, std *streams, f *decodeFlags, paths []string) (*capture.Chain, error) {
 	opts := capture.Options{}
 	switch f.times {
 	case "written":
@@ -194,7 +194,7 @@ func openCaptures(std *streams, f *decodeFlags, paths []string) (*capture.Chain,
 	var sources []*capture.Text
 	for _, path := range paths {
 		if path == "-" {
-			sources = append(sources, capture.NewText("standard input", std.in, opts))
+			sources = append(sources, capture.NewText("standard input", newInterruptible(ctx, std.in), opts))
 			continue
 		}
 		if info, err := os.Stat(path); err == nil && info.IsDir() {
