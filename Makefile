@@ -1,6 +1,6 @@
 # Busloom's make targets; "make" alone lists them.
 GO ?= go
-FUZZTIME ?= 3s
+FUZZTIME ?= 10000x
 LONGFUZZ ?= 60s
 BIN := bin/busloom
 

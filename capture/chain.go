@@ -17,7 +17,8 @@ type Chain struct {
 
 var _ frame.Source = (*Chain)(nil)
 
-// NewChain joins texts in their order.
+// NewChain joins texts in their order. None of them may have been read before;
+// each is closed when it has been read to its end.
 func NewChain(texts ...*Text) *Chain {
 	c := &Chain{texts: texts, ifaces: newInterfaces()}
 	// The texts share one numbering, so no frame has to be renumbered.
@@ -36,6 +37,9 @@ func (c *Chain) Read(batch []frame.Frame) (int, error) {
 		}
 		if err == nil {
 			return 0, nil
+		}
+		if err := c.texts[c.at].Close(); err != nil {
+			return 0, err
 		}
 		c.at++
 	}
@@ -61,6 +65,15 @@ func (c *Chain) Counts() frame.Counts {
 		sum.Records += n.Records
 		sum.Malformed += n.Malformed
 		sum.Bytes += n.Bytes
+	}
+	return sum
+}
+
+// OtherLines is the number of lines read that aren't records, of all texts.
+func (c *Chain) OtherLines() int64 {
+	sum := int64(0)
+	for _, t := range c.texts {
+		sum += t.OtherLines()
 	}
 	return sum
 }

@@ -30,6 +30,9 @@ type clock struct {
 
 // remember keeps the text of a time's whole part for the lines to come.
 func (c *clock) remember(text []byte, seconds int64) {
+	if c.length == len(text) && c.ns == seconds*1e9 {
+		return // as many digits of the same value are the same text
+	}
 	if len(text) > 16 {
 		c.length = 0
 		return
@@ -42,14 +45,18 @@ func (c *clock) remember(text []byte, seconds int64) {
 	*c = clock{le.Uint64(w[:]), le.Uint64(w[8:]), le.Uint64(m[:]), le.Uint64(m[8:]), len(text), seconds * 1e9}
 }
 
+// fastReach is how far fastLine looks beyond a line's first byte: time 16+11,
+// name 16, identifier 9, data 16, end 4, and a word more; fastFD looks by itself.
+const fastReach = 96
+
 // fastLine reads the line that begins at b[at]; b reaches slack bytes beyond
-// the block. It returns the place after the line's end, or 0 if the line is
-// for the general parser.
+// the block. It returns the place after the line's end, which may be beyond the
+// block, or 0 if the line is for the general parser.
 func (p *parser) fastLine(b []byte, at int, f *frame.Frame) int {
 	le := binary.LittleEndian
 	c := &p.clock
 	// Time: the same second as the line before, then 6 digits, ") ".
-	if c.length == 0 || at+64+slack > len(b) {
+	if c.length == 0 || at+fastReach > len(b) {
 		return 0
 	}
 	if le.Uint64(b[at:])&c.mask0 != c.word0 || le.Uint64(b[at+8:])&c.mask1 != c.word1 {
@@ -57,34 +64,55 @@ func (p *parser) fastLine(b []byte, at int, f *frame.Frame) int {
 	}
 	at += c.length
 	w := le.Uint64(b[at:])
-	if w>>48 != ')'|' '<<8 {
-		return 0
+	if w>>48 == ')'|' '<<8 {
+		micros, ok := eightDigits(w<<16 | 0x3030)
+		if !ok {
+			return 0
+		}
+		f.Time = c.ns + int64(micros)*1000
+		at += 8
+	} else {
+		// Or 9 digits.
+		most, ok := eightDigits(w)
+		last := b[at+8] - '0'
+		if !ok || last > 9 || b[at+9] != ')' || b[at+10] != ' ' {
+			return 0
+		}
+		f.Time = c.ns + int64(most)*10 + int64(last)
+		at += 11
 	}
-	digits := w<<16 | 0x3030
-	if (digits&0xF0F0F0F0F0F0F0F0)|((digits+0x0606060606060606)&0xF0F0F0F0F0F0F0F0)>>4 != 0x3333333333333333 {
-		return 0
-	}
-	digits = (digits & 0x0F0F0F0F0F0F0F0F) * 2561 >> 8
-	digits = (digits & 0x00FF00FF00FF00FF) * 6553601 >> 16
-	digits = (digits & 0x0000FFFF0000FFFF) * 42949672960001 >> 32
-	f.Time = c.ns + int64(digits)*1000
-	at += 8
 
-	// Interface: up to 7 bytes and a blank.
+	// Interface: names of one length are padded to that of the longest.
+	for b[at] == ' ' {
+		if at++; at+fastReach > len(b) {
+			return 0
+		}
+	}
 	w = le.Uint64(b[at:])
-	blank := w ^ ones64*' '
-	end := (blank - ones64) &^ blank & highs64
-	if end == 0 {
-		return 0
+	end := firstBlank(w)
+	if end != 0 {
+		length := bits.TrailingZeros64(end) &^ 7
+		name := w & (1<<length - 1)
+		s := &p.ifaces.short[slot(name)]
+		if s.word0 != name || s.word1 != 0 || name == 0 { // an empty slot has no name
+			return 0
+		}
+		f.Bus = s.bus
+		at += length>>3 + 1
+	} else {
+		more := le.Uint64(b[at+8:])
+		if end = firstBlank(more); end == 0 {
+			return 0
+		}
+		length := bits.TrailingZeros64(end) &^ 7
+		more &= 1<<length - 1
+		s := &p.ifaces.short[slot(w^more)]
+		if s.word0 != w || s.word1 != more || w == 0 {
+			return 0
+		}
+		f.Bus = s.bus
+		at += 8 + length>>3 + 1
 	}
-	length := bits.TrailingZeros64(end) &^ 7
-	name := w & (1<<length - 1)
-	s := &p.ifaces.short[slot(name)]
-	if s.word != name || name == 0 {
-		return 0
-	}
-	f.Bus = s.bus
-	at += length>>3 + 1
 
 	// Identifier: 3 or 8 hex digits and #.
 	w = le.Uint64(b[at:])
@@ -120,10 +148,42 @@ func (p *parser) fastLine(b []byte, at int, f *frame.Frame) int {
 		le.PutUint32(f.Data[:4], lo)
 	}
 	at += n
-	if n&1 != 0 || b[at] != '\n' {
+	if n&1 != 0 {
 		return 0
 	}
 	f.Len, f.DLC = uint8(n/2), uint8(n/2)
+	if b[at] == '\n' {
+		return at + 1
+	}
+	return fastEnd(b, at)
+}
+
+// eightDigits is the value of eight decimal digits, first one lightest in w.
+func eightDigits(w uint64) (v uint64, ok bool) {
+	ok = (w&0xF0F0F0F0F0F0F0F0)|((w+0x0606060606060606)&0xF0F0F0F0F0F0F0F0)>>4 == 0x3333333333333333
+	w = (w & 0x0F0F0F0F0F0F0F0F) * 2561 >> 8
+	w = (w & 0x00FF00FF00FF00FF) * 6553601 >> 16
+	return (w & 0x0000FFFF0000FFFF) * 42949672960001 >> 32, ok
+}
+
+// firstBlank has its lowest bit at the top of the first blank of w; 0 if there
+// is none.
+func firstBlank(w uint64) uint64 {
+	blank := w ^ ones64*' '
+	return (blank - ones64) &^ blank & highs64
+}
+
+// fastEnd takes what may stand before the line's end: a direction, a CR.
+func fastEnd(b []byte, at int) int {
+	if b[at] == ' ' && (b[at+1] == 'R' || b[at+1] == 'T') {
+		at += 2
+	}
+	if b[at] == '\r' {
+		at++
+	}
+	if b[at] != '\n' {
+		return 0
+	}
 	return at + 1
 }
 
@@ -161,15 +221,12 @@ func (p *parser) fastFD(b []byte, at int, f *frame.Frame) int {
 			break
 		}
 	}
-	if at >= len(b) || b[at] != '\n' {
-		return 0
-	}
 	dlc, ok := frame.DLCOfLen(length, true)
-	if !ok {
+	if !ok || at+4 > len(b) {
 		return 0
 	}
 	f.Len, f.DLC = uint8(length), dlc
-	return at + 1
+	return fastEnd(b, at)
 }
 
 // hexWord reads the hex digits at the start of 8 bytes (first byte lightest):

@@ -1,17 +1,20 @@
 package capture
 
+import "encoding/binary"
+
 // interfaces numbers interface names in the order of their appearance.
 type interfaces struct {
 	names []string
 	index map[string]uint16
 
-	// short finds names of up to 7 bytes by their bytes in a word.
+	// short finds most names of up to 15 bytes by their bytes in two words; a
+	// name whose slot is taken isn't in it.
 	short [64]shortName
 }
 
 type shortName struct {
-	word uint64 // the name's bytes, first byte lightest; 0: no entry
-	bus  uint16
+	word0, word1 uint64 // the name's bytes, first byte lightest; 0: no entry
+	bus          uint16
 }
 
 func newInterfaces() *interfaces { return &interfaces{index: map[string]uint16{}} }
@@ -30,17 +33,16 @@ func (t *interfaces) number(name []byte) (uint16, bool) {
 	n := uint16(len(t.names))
 	t.names = append(t.names, string(name))
 	t.index[string(name)] = n
-	if len(name) < 8 {
-		var word uint64
-		for i, b := range name {
-			word |= uint64(b) << (8 * i)
-		}
-		if s := &t.short[slot(word)]; s.word == 0 {
-			*s = shortName{word, n}
+	if len(name) < 16 {
+		var text [16]byte
+		copy(text[:], name)
+		w0, w1 := binary.LittleEndian.Uint64(text[:]), binary.LittleEndian.Uint64(text[8:])
+		if s := &t.short[slot(w0^w1)]; s.word0 == 0 {
+			*s = shortName{w0, w1, n}
 		}
 	}
 	return n, true
 }
 
-// slot hashes a name's word.
-func slot(word uint64) uint64 { return word * 0x9E3779B97F4A7C15 >> 58 }
+// slot hashes a name's words.
+func slot(words uint64) uint64 { return words * 0x9E3779B97F4A7C15 >> 58 }

@@ -13,41 +13,46 @@ import (
 // of the reader's code. ok is false for a line that is no record; then
 // malformed tells whether it is a broken one.
 func oracle(line string) (f frame.Frame, iface string, ok, malformed bool) {
-	line = strings.TrimSuffix(line, "\r")
-	trimmed := strings.TrimLeft(line, " ")
-	if trimmed == "" || trimmed[0] == '#' || trimmed[0] == '\t' || trimmed[0] == '\r' {
+	if len(line) > 4096 {
+		return f, "", false, !comment.MatchString(line)
+	}
+	line = strings.TrimRight(line, "\r")
+	plain := colours.ReplaceAllString(line, "\t") // a tab parts words, too
+	if blankLine.MatchString(plain) || comment.MatchString(plain) || (detail.MatchString(line) && !recordSign.MatchString(line)) {
 		return f, "", false, false
 	}
-	if len(line) > 4096 {
-		return f, "", false, true
+	if m := logLine.FindStringSubmatch(plain); m != nil {
+		f, ok = oracleLog(m)
+		return f, m[2], ok, !ok
 	}
-	if m := logLine.FindStringSubmatch(line); m != nil {
-		if f, ok = oracleLog(m); ok {
-			return f, m[2], true, false
-		}
-		return f, "", false, true
-	}
-	if m := screenLine.FindStringSubmatch(line); m != nil {
-		if f, ok = oracleScreen(m); ok {
-			return f, m[2], true, false
-		}
+	if m := screenLine.FindStringSubmatch(plain); m != nil {
+		f, ok = oracleScreen(m)
+		return f, m[2], ok, !ok
 	}
 	return f, "", false, true
 }
 
 const (
-	timePart  = `(?:\((\d{1,18}(?:\.\d{1,9})?|\d{4}-\d\d-\d\d \d\d:\d\d:\d\d(?:\.\d{1,9})?)\)(?: +|$))?`
-	namePart  = `([!-"$-')-Z\\^-~][!-"$-'*-Z\\^-~]{0,31})`
+	timePart  = `(?:\((\d{1,18}(?:\.\d{1,9})?|\d{4}-\d\d-\d\d \d\d:\d\d:\d\d(?:\.\d{1,9})?)\)(?:[ \t]+|$))?`
+	namePart  = `([!-"$-'*-Z\\^-~]{1,32})[ \t]+`
 	idPart    = `([0-9A-Fa-f]{3}|[0-9A-Fa-f]{8})`
-	flagsPart = `((?:(?:RX|TX|-|B|E) +)*)`
+	flagsPart = `((?:(?:RX|TX|-|B|E)[ \t]+)*)`
 )
 
 var (
-	logLine    = regexp.MustCompile(`^ *` + timePart + namePart + ` +((?:(?:RX|TX|-) +)*)` + idPart + `#(#[0-7])?(.*)$`)
-	logTail    = regexp.MustCompile(`^((?:[0-9A-Fa-f]{2}(?:\.[0-9A-Fa-f]{2})*)*)(?:_([9A-Fa-f]))?( +(?:[RT] *)?)?$`)
-	remoteTail = regexp.MustCompile(`^R(?:([0-8])(?:_([9A-Fa-f]))?)?( +(?:[RT] *)?)?$`)
-	screenLine = regexp.MustCompile(`^ *` + timePart + namePart + ` +` + flagsPart + idPart + ` +(?:\[(\d{1,2})\]|\{([0-9A-Fa-f])\}) *(.*)$`)
-	dataBytes  = regexp.MustCompile(`^[0-9A-Fa-f]{2}`)
+	colours    = regexp.MustCompile(`\x1b\[[0-9;]*m`)
+	blankLine  = regexp.MustCompile(`^[ \t]*$`)
+	comment    = regexp.MustCompile(`^[ \t]*#`)
+	detail     = regexp.MustCompile(`^\t(?:[ \t]|\x1b\[[0-9;]*m)*[^( \t]`)
+	recordSign = regexp.MustCompile(`#|(?:^|[^\x1b])\[| \{`)
+	logLine    = regexp.MustCompile(`^[ \t]*` + timePart + namePart + `((?:(?:RX|TX|-)[ \t]+)*)` + idPart + `#(#[0-7])?(.*)$`)
+	logTail    = regexp.MustCompile(`^((?:\.?[0-9A-Fa-f]{2})*)(?:_([9A-Fa-f]))?([ \t]+(?:[RT][ \t]*)?)?$`)
+	remoteTail = regexp.MustCompile(`^R(?:([0-8])(?:_([9A-Fa-f]))?)?([ \t]+(?:[RT][ \t]*)?)?$`)
+	screenLine = regexp.MustCompile(`^[ \t]*` + timePart + namePart + flagsPart + idPart + `[ \t]+(?:\[(\d{1,2})\]|\{([0-9A-Fa-f])\})(.*)$`)
+	hexDigits  = regexp.MustCompile(`^[0-9A-Fa-f]{2}`)
+	binDigits  = regexp.MustCompile(`^[01]{8}`)
+	errorEnd   = regexp.MustCompile(`^[ \t]+ERRORFRAME(?:[ \t]|$)`)
+	screenEnd  = regexp.MustCompile(`^[ \t]*$|^[ \t]+(?:'.*'|` + "`.*`" + `)[ \t]*$`)
 )
 
 func oracleTime(text string) (int64, bool) {
@@ -215,34 +220,60 @@ func oracleScreen(m []string) (f frame.Frame, ok bool) {
 		}
 	}
 	rest := m[7]
-	if after, isRemote := strings.CutPrefix(rest, "remote request"); isRemote {
+	if after, isRemote := strings.CutPrefix(strings.TrimLeft(rest, " \t"), "remote request"); isRemote {
 		if f.Flags&(frame.FD|frame.Error) != 0 {
 			return f, false
 		}
 		f.Flags |= frame.Remote
 		f.Len = 0
-		return f, oracleEnd(after)
+		return f, screenEnd.MatchString(after)
 	}
-	for i := range length {
-		if i > 0 {
-			if rest == "" || (rest[0] != ' ' && rest[0] != '.') {
-				return f, false
-			}
-			rest = strings.TrimLeft(rest[1:], " ")
-		}
-		hex := dataBytes.FindString(rest)
-		if hex == "" {
-			return f, false
-		}
-		b, _ := strconv.ParseUint(hex, 16, 8)
-		f.Data[i] = byte(b)
-		rest = rest[2:]
+	data, rest, ok := oracleColumns(rest, length)
+	copy(f.Data[:], data)
+	if ok && f.Flags&frame.Error != 0 && errorEnd.MatchString(rest) {
+		return f, true
 	}
-	return f, oracleEnd(rest)
+	return f, ok && screenEnd.MatchString(rest)
 }
 
-func oracleEnd(rest string) bool {
-	rest = strings.TrimLeft(rest, " ")
-	quoted := func(q string) bool { return len(rest) >= 2 && strings.HasPrefix(rest, q) && strings.HasSuffix(rest, q) }
-	return rest == "" || strings.TrimRight(rest, " ") == "ERRORFRAME" || quoted("'") || quoted("`")
+// oracleColumns cuts length bytes off the front of text.
+func oracleColumns(text string, length int) (data []byte, rest string, ok bool) {
+	if length == 0 {
+		return nil, text, true
+	}
+	text = strings.TrimLeft(text, " \t")
+	digits, base := hexDigits, 16
+	if binDigits.MatchString(text) {
+		digits, base = binDigits, 2
+	}
+	backwards := false
+	for i := range length {
+		if i == 1 {
+			backwards = strings.HasPrefix(text, "`")
+		}
+		if i > 0 {
+			trimmed := strings.TrimLeft(text, " \t")
+			switch {
+			case backwards && text != "" && text[0] == '`', !backwards && text != "" && text[0] == '.':
+				text = text[1:]
+			case !backwards && len(trimmed) < len(text):
+				text = trimmed
+			default:
+				return nil, "", false
+			}
+		}
+		word := digits.FindString(text)
+		v, err := strconv.ParseUint(word, base, 8)
+		if err != nil {
+			return nil, "", false
+		}
+		data = append(data, byte(v))
+		text = text[len(word):]
+	}
+	if backwards {
+		for i := range length / 2 {
+			data[i], data[length-1-i] = data[length-1-i], data[i]
+		}
+	}
+	return data, text, true
 }

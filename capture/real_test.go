@@ -2,6 +2,7 @@ package capture
 
 import (
 	"io"
+	"slices"
 	"testing"
 
 	"busloom/frame"
@@ -9,8 +10,8 @@ import (
 	"github.com/stretchr/testify/require"
 )
 
-// Two real captures of an open data set (CC0 1.0; testdata/real/SOURCES.md).
-// The figures were counted by independent programs.
+// Open data set of real captures, CC0, see testdata/real/SOURCES.md. The figures
+// were counted by programs that share nothing with this one.
 func TestRealCaptures(t *testing.T) {
 	type period struct {
 		bus               string
@@ -27,10 +28,11 @@ func TestRealCaptures(t *testing.T) {
 		back        int
 		lengths     map[uint8]int
 		periods     []period
+		alone       int64 // s between the earliest frame and the next, 0 if they're close
 	}{
 		{"steering-lock-to-lock.log.gz", 19871, 130, 239164800, 245030600, 2854, map[uint8]int{1: 58, 4: 1, 6: 10, 7: 58, 8: 19744},
-			[]period{{"can0", 0x236, 583, 9.988, 8700, 11400}, {"can1", 0x287, 582, 9.972, 9300, 10700}}},
-		{"parking-brake.log.gz", 17279, 127, 282012600, 366310300, 2425, map[uint8]int{1: 51, 6: 5, 7: 50, 8: 17173}, nil},
+			[]period{{"can0", 0x236, 583, 9.988, 8700, 11400}, {"can1", 0x287, 582, 9.972, 9300, 10700}}, 0},
+		{"parking-brake.log.gz", 17279, 127, 282012600, 366310300, 2425, map[uint8]int{1: 51, 6: 5, 7: 50, 8: 17173}, nil, 79},
 	} {
 		t.Run(c.file, func(t *testing.T) {
 			source, err := Open("../testdata/real/"+c.file, Options{})
@@ -71,6 +73,17 @@ func TestRealCaptures(t *testing.T) {
 			require.Equal(t, c.last*1000, last)
 			require.Equal(t, c.back, back)
 			require.Equal(t, c.lengths, lengths)
+			var all []int64
+			for _, at := range times {
+				all = append(all, at...)
+			}
+			slices.Sort(all)
+			require.Equal(t, c.alone, (all[1]-all[0])/1e9)
+			if c.alone > 0 {
+				require.True(t, slices.ContainsFunc([]uint16{0, 1}, func(bus uint16) bool {
+					return slices.Contains(times[key{bus, 0x236}], all[0])
+				}))
+			}
 			for _, p := range c.periods {
 				bus := uint16(0)
 				if source.Interfaces()[1] == p.bus {

@@ -16,9 +16,10 @@ import (
 // Times says how the times of a text are meant.
 type Times uint8
 
-// The ways of writing times.
+// The ways of writing times. A line without a time has the time 0, or that of
+// the line before. Dates don't tell their zone and are taken as UTC.
 const (
-	AsWritten     Times = iota // each is a time of its own
+	AsWritten     Times = iota // each is a time of its own: since 1970, a date, or since the first line
 	SincePrevious              // each is the distance from the line before
 )
 
@@ -44,13 +45,14 @@ func (e *DamageError) Error() string {
 
 func (e *DamageError) Unwrap() error { return e.Err }
 
-// Text reads candump-style text, plain or gzip. It implements frame.Source.
+// Text reads candump-style text, plain or gzip. It implements frame.Source: an
+// error other than io.EOF is a *DamageError. Record numbers and, with
+// SincePrevious, times begin anew in each text.
 type Text struct {
 	name   string
 	blocks *blockReader
 	parser parser
 	rest   []byte // what is left of the current block
-	block  block
 	closer io.Closer
 	ended  error
 }
@@ -77,12 +79,14 @@ func NewText(name string, r io.Reader, opts Options) *Text {
 	return t
 }
 
-// Close closes the file that Open opened.
+// Close closes the file that Open opened. It may be called more than once.
 func (t *Text) Close() error {
 	if t.closer == nil {
 		return nil
 	}
-	return t.closer.Close()
+	err := t.closer.Close()
+	t.closer = nil
+	return err
 }
 
 // Name is the file's name.
@@ -96,21 +100,21 @@ func (t *Text) Counts() frame.Counts {
 	return frame.Counts{Records: t.parser.record, Malformed: t.parser.malformed, Bytes: t.blocks.offset}
 }
 
+// OtherLines is the number of lines read that aren't records: blank lines,
+// comments, and the lines of detail below error frames.
+func (t *Text) OtherLines() int64 { return t.parser.other }
+
 // Read implements frame.Source.
 func (t *Text) Read(batch []frame.Frame) (int, error) {
 	if len(batch) == 0 {
 		return 0, nil
 	}
 	for {
-		if len(t.rest) == 0 {
+		for len(t.rest) == 0 {
 			if t.ended != nil {
 				return 0, t.ended
 			}
-			if err := t.nextBlock(); err != nil {
-				t.ended = err
-				return 0, err
-			}
-			continue
+			t.ended = t.nextBlock()
 		}
 		n, used := t.parser.parse(t.rest, batch)
 		t.rest = t.rest[used:]
@@ -120,6 +124,8 @@ func (t *Text) Read(batch []frame.Frame) (int, error) {
 	}
 }
 
+// nextBlock gets lines to parse; a block that is no whole lines is a record
+// that can't be read.
 func (t *Text) nextBlock() error {
 	b, err := t.blocks.next()
 	if err != nil {
@@ -129,13 +135,16 @@ func (t *Text) nextBlock() error {
 		}
 		return err
 	}
-	t.block = b
 	t.parser.offset = b.offset
-	if b.overlong {
-		t.parser.reject(b.data, &lineError{column: maxLine, problem: fmt.Sprintf("the line is longer than %d bytes", maxLine), expected: "a record of a capture"})
-		return nil
+	switch b.kind {
+	case wholeLines:
+		t.rest = b.data
+	case overlongLine:
+		t.parser.line++
+		t.parser.overlong(b.data)
+	case cutLine:
+		t.parser.cut(b.data)
 	}
-	t.rest = b.data
 	return nil
 }
 
@@ -143,28 +152,36 @@ func (t *Text) nextBlock() error {
 type unpacker struct {
 	r    io.Reader
 	text io.Reader
+	gzip bool
 }
 
 func (u *unpacker) Read(p []byte) (int, error) {
 	if u.text == nil {
-		in := bufio.NewReaderSize(u.r, 128<<10)
-		magic, err := in.Peek(2)
-		if err != nil && !errors.Is(err, io.EOF) {
+		if err := u.recognise(); err != nil {
 			return 0, err
-		}
-		u.text = in
-		if bytes.Equal(magic, []byte{0x1f, 0x8b}) {
-			z, err := gzip.NewReader(in)
-			if err != nil {
-				u.text = nil
-				return 0, fmt.Errorf("the gzip header: %w", err)
-			}
-			u.text = z
 		}
 	}
 	n, err := u.text.Read(p)
-	if err != nil && !errors.Is(err, io.EOF) {
+	if u.gzip && err != nil && !errors.Is(err, io.EOF) {
 		err = fmt.Errorf("the archive is damaged or cut short: %w", err)
 	}
 	return n, err
+}
+
+// recognise looks for gzip's magic bytes (RFC 1952).
+func (u *unpacker) recognise() error {
+	in := bufio.NewReaderSize(u.r, 128<<10)
+	magic, err := in.Peek(2)
+	if err != nil && !errors.Is(err, io.EOF) {
+		return err
+	}
+	u.text = in
+	if !bytes.Equal(magic, []byte{0x1f, 0x8b}) {
+		return nil
+	}
+	u.gzip = true
+	if u.text, err = gzip.NewReader(in); err != nil {
+		return fmt.Errorf("the archive's header is damaged or cut short: %w", err)
+	}
+	return nil
 }

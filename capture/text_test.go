@@ -6,14 +6,17 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math/rand/v2"
+	"os"
+	"path/filepath"
+	"runtime"
 	"strings"
 	"testing"
+	"testing/iotest"
 
 	"busloom/frame"
 
 	"github.com/stretchr/testify/require"
-	"go.einride.tech/can"
-	"pgregory.net/rapid"
 )
 
 // readAll reads a text to its end.
@@ -40,95 +43,13 @@ func readAll(t require.TestingT, r io.Reader, opts Options) (frames []frame.Fram
 	}
 }
 
-func TestForms(t *testing.T) {
-	type want struct {
-		time  int64
-		iface string
-		id    uint32
-		flags frame.Flags
-		dlc   uint8
-		data  string
-	}
-	for _, c := range []struct {
-		line string
-		want want
-	}{
-		{"(1699999999.123456) can0 123#1122", want{1699999999123456000, "can0", 0x123, 0, 2, "\x11\x22"}},
-		{"(1699999999.123456789) vcan10 7FF#", want{1699999999123456789, "vcan10", 0x7FF, 0, 0, ""}},
-		{"(0.5) can0 18DAF110#01.02.ff", want{500000000, "can0", 0x18DAF110, frame.Extended, 3, "\x01\x02\xff"}},
-		{"(1.0) can0 123#R", want{1e9, "can0", 0x123, frame.Remote, 0, ""}},
-		{"(1.0) can0 123#R5", want{1e9, "can0", 0x123, frame.Remote, 5, ""}},
-		{"(1.0) can0 123#R8_C", want{1e9, "can0", 0x123, frame.Remote, 12, ""}},
-		{"(1.0) can0 123##0", want{1e9, "can0", 0x123, frame.FD, 0, ""}},
-		{"(1.0) can0 123##3000102030405060708090A0B", want{1e9, "can0", 0x123, frame.FD | frame.BitRateSwitch | frame.ErrorPassive, 9, "\x00\x01\x02\x03\x04\x05\x06\x07\x08\x09\x0a\x0b"}},
-		{"(1.0) can0 12345678##5" + strings.Repeat("AB", 64), want{1e9, "can0", 0x12345678, frame.Extended | frame.FD | frame.BitRateSwitch, 15, strings.Repeat("\xab", 64)}},
-		{"(1.0) can0 123#1122334455667788_9", want{1e9, "can0", 0x123, 0, 9, "\x11\x22\x33\x44\x55\x66\x77\x88"}},
-		{"(1.0) can0 20000004#0008000000006000", want{1e9, "can0", 4, frame.Error, 8, "\x00\x08\x00\x00\x00\x00\x60\x00"}},
-		{"(1.0) can0 123#11 R", want{1e9, "can0", 0x123, 0, 1, "\x11"}},
-		{"(1.0) can0 123#11 T", want{1e9, "can0", 0x123, 0, 1, "\x11"}},
-		{"can0 123#11", want{0, "can0", 0x123, 0, 1, "\x11"}},
-
-		{"  can0  123   [8]  11 22 33 44 55 66 77 88", want{0, "can0", 0x123, 0, 8, "\x11\x22\x33\x44\x55\x66\x77\x88"}},
-		{" (1699999999.123456)  can0  123   [2]  11 22   '.\"'", want{1699999999123456000, "can0", 0x123, 0, 2, "\x11\x22"}},
-		{" (2023-11-14 22:13:19.123456)  can0  18DAF110   [1]  FF", want{1699999999123456000, "can0", 0x18DAF110, frame.Extended, 1, "\xff"}},
-		{" (000.001234)  can0  123   [0] ", want{1234000, "can0", 0x123, 0, 0, ""}},
-		{"  can0  123   [3]  remote request", want{0, "can0", 0x123, frame.Remote, 3, ""}},
-		{"  can0  20000040   [8]  00 00 00 00 00 00 00 00   ERRORFRAME", want{0, "can0", 0x40, frame.Error, 8, "\x00\x00\x00\x00\x00\x00\x00\x00"}},
-		{"  can0  123  [12]  00 01 02 03 04 05 06 07 08 09 0A 0B", want{0, "can0", 0x123, frame.FD, 9, "\x00\x01\x02\x03\x04\x05\x06\x07\x08\x09\x0a\x0b"}},
-		{"  can0  TX B E  123  [08]  00 01 02 03 04 05 06 07", want{0, "can0", 0x123, frame.FD | frame.BitRateSwitch | frame.ErrorPassive, 8, "\x00\x01\x02\x03\x04\x05\x06\x07"}},
-		{"  can0  RX - -  123   [1]  AA", want{0, "can0", 0x123, 0, 1, "\xaa"}},
-		{"  can0  123   {B}  11 22 33 44 55 66 77 88", want{0, "can0", 0x123, 0, 11, "\x11\x22\x33\x44\x55\x66\x77\x88"}},
-	} {
-		for _, end := range []string{"", "\n", "\r\n"} {
-			frames, source, rejects, err := readAll(t, strings.NewReader(c.line+end), Options{})
-			require.NoError(t, err)
-			require.Empty(t, rejects, c.line)
-			require.Len(t, frames, 1, c.line)
-			f := frames[0]
-			got := want{f.Time, source.Interfaces()[f.Bus], f.ID, f.Flags, f.DLC, string(f.Payload())}
-			require.Equal(t, c.want, got, c.line)
-			require.Equal(t, int64(1), f.Record)
-		}
-	}
+// dribble gives at most size bytes at a time.
+type dribble struct {
+	r    io.Reader
+	size int
 }
 
-func TestRejectsSayWhere(t *testing.T) {
-	text := "# comment\n\n(1.0) can0 123#11\n"
-	for _, c := range []struct {
-		line, message string
-	}{
-		{"(1.0 can0 123#11", "test.log:4:5: ' ' stands here: expected the closing parenthesis of the time"},
-		{"(1.0) can0", "test.log:4:11: the line ends after the interface: expected an identifier"},
-		{"(1.0) can0 12#11", "test.log:4:14: the identifier is cut short: '#' stands here: expected an identifier of 3 hex digits (11 bits) or 8 (29 bits)"},
-		{"(1.0) can0 8FF#11", "test.log:4:12: the identifier 8FF needs more than 11 bits: expected an identifier of 3 hex digits (11 bits) or 8 (29 bits)"},
-		{"(1.0) can0 123#1", "test.log:4:17: half a byte: the line ends here: expected a second hex digit"},
-		{"(1.0) can0 123#112233445566778899", "test.log:4:32: the data has more than 8 bytes: expected the line's end"},
-		{"(1.0) can0 123##8", "test.log:4:17: '8' stands here: expected the FD flags, a digit from 0 to 7"},
-		{"(1.0) can0 123##0112233445566778899", "test.log:4:18: an FD frame can't have 9 bytes: expected 0 to 8, 12, 16, 20, 24, 32, 48 or 64 bytes"},
-		{"(99999999999.0) can0 123#11", "test.log:4:2: the time is beyond what can be counted in nanoseconds: expected a time before the year 2262"},
-		{"  can0  123   [3]  11 22", "test.log:4:25: the line ends here: expected byte 3 of 3"},
-		{"  can0  123   [9]  11 22", "test.log:4:16: no such frame has 9 bytes: expected a length that a frame can have"},
-		{"\x00\xff\xfe", "test.log:4:1: this is no name of an interface: expected a name such as can0 between the time and the identifier"},
-		{strings.Repeat("x", 5000), "test.log:4:4097: the line is longer than 4096 bytes: expected a record of a capture"},
-	} {
-		frames, _, rejects, err := readAll(t, strings.NewReader(text+c.line+"\n(2.0) can0 123#22\n"), Options{})
-		require.NoError(t, err)
-		require.Len(t, frames, 2)
-		require.Len(t, rejects, 1)
-		require.Equal(t, c.message, rejects[0].Error())
-		require.Equal(t, int64(2), rejects[0].Record)
-		require.Equal(t, int64(len(text)), rejects[0].Offset)
-		require.Equal(t, int64(3), frames[1].Record)
-		require.Equal(t, int64(len(text)+len(c.line)+1), frames[1].Offset)
-	}
-}
-
-func TestTimesSincePrevious(t *testing.T) {
-	frames, _, rejects, err := readAll(t, strings.NewReader("(1.0) a 1##\n(0.5) a 100#\n(0.25) a 100#\n(9000000000.0) a 100#\n(9000000000.0) a 100#\n"), Options{Times: SincePrevious})
-	require.NoError(t, err)
-	require.Len(t, rejects, 2) // the first line, and the sum that overflows
-	require.Equal(t, []int64{500e6, 750e6}, []int64{frames[0].Time, frames[1].Time})
-}
+func (d *dribble) Read(p []byte) (int, error) { return d.r.Read(p[:min(len(p), d.size)]) }
 
 func zipped(t require.TestingT, texts ...string) []byte {
 	var b bytes.Buffer
@@ -141,39 +62,116 @@ func zipped(t require.TestingT, texts ...string) []byte {
 	return b.Bytes()
 }
 
+// numberedLines writes lines of log form.
+func numberedLines(n int) string {
+	var lines strings.Builder
+	for i := range n {
+		fmt.Fprintf(&lines, "(%d.%06d) can%d %03X#%016X\n", i/1000, i%1000*7, i%3, i%2048, uint64(i)*0x9E3779B97F4A7C15)
+	}
+	return lines.String()
+}
+
 // Archives are made by the standard library, read by another one.
 func TestArchives(t *testing.T) {
-	var lines strings.Builder
-	for i := range 40000 {
-		fmt.Fprintf(&lines, "(%d.%06d) can%d %03X#%016X\n", i/1000, i%1000*7, i%3, i%2048, i*0x9E3779B9)
-	}
-	whole := zipped(t, lines.String())
-	plain, _, _, err := readAll(t, strings.NewReader(lines.String()), Options{})
+	lines := numberedLines(40000)
+	whole := zipped(t, lines)
+	plain, _, _, err := readAll(t, strings.NewReader(lines), Options{})
 	require.NoError(t, err)
 	require.Len(t, plain, 40000)
-	frames, _, _, err := readAll(t, bytes.NewReader(whole), Options{})
+	frames, source, _, err := readAll(t, bytes.NewReader(whole), Options{})
 	require.NoError(t, err)
 	require.Equal(t, plain, frames)
+	require.Equal(t, int64(len(lines)), source.Counts().Bytes)
 
 	two, _, _, err := readAll(t, bytes.NewReader(zipped(t, "(1.0) a 100#\n", "(2.0) a 100#\n")), Options{})
 	require.NoError(t, err)
 	require.Len(t, two, 2)
 
-	frames, _, _, err = readAll(t, bytes.NewReader(whole[:len(whole)/2]), Options{})
 	var damage *DamageError
-	require.ErrorAs(t, err, &damage)
-	require.Equal(t, "test.log", damage.Name)
-	require.Greater(t, len(frames), 10000, "what was readable is handed out")
-	require.Equal(t, plain[:len(frames)-1], frames[:len(frames)-1])
-
-	broken := bytes.Clone(whole)
-	broken[len(broken)/2] ^= 0x55
-	_, _, _, err = readAll(t, bytes.NewReader(broken), Options{})
-	require.ErrorAs(t, err, &damage)
 	_, _, _, err = readAll(t, bytes.NewReader([]byte{0x1f, 0x8b}), Options{})
 	require.ErrorAs(t, err, &damage)
+	require.EqualError(t, err, "test.log: after 0 bytes of text: the archive's header is damaged or cut short: unexpected EOF")
 	_, _, _, err = readAll(t, bytes.NewReader(nil), Options{})
 	require.NoError(t, err)
+	empty, _, _, err := readAll(t, bytes.NewReader(zipped(t, "")), Options{})
+	require.NoError(t, err)
+	require.Empty(t, empty)
+}
+
+// What is readable before the damage is handed out, and nothing else: half a
+// line may look like a whole one, with fewer bytes.
+func TestDamagedArchives(t *testing.T) {
+	lines := numberedLines(10000)
+	whole := zipped(t, lines)
+	plain, _, _, err := readAll(t, strings.NewReader(lines), Options{})
+	require.NoError(t, err)
+	breaksInLine := 0
+	for i := range 24 {
+		at := len(whole) * (2*i + 40) / 90
+		damaged := whole[:at]
+		if i%4 == 0 {
+			damaged = bytes.Clone(whole)
+			damaged[at] ^= 0x55
+		}
+		frames, source, rejects, err := readAll(t, bytes.NewReader(damaged), Options{})
+		var damage *DamageError
+		require.ErrorAs(t, err, &damage)
+		require.Equal(t, "test.log", damage.Name)
+		require.Contains(t, err.Error(), "the archive is damaged or cut short")
+		require.Equal(t, source.Counts().Bytes, damage.Offset)
+		if i%4 == 0 {
+			continue // a wrong byte may make wrong text before it is noticed
+		}
+		require.Greater(t, len(frames), 1000)
+		require.Equal(t, plain[:len(frames)], frames)
+		if len(rejects) > 0 {
+			breaksInLine++
+			require.Len(t, rejects, 1)
+			require.Equal(t, "the text breaks off inside this line", rejects[0].Problem)
+			require.Equal(t, int64(len(frames)+1), rejects[0].Record)
+			require.Equal(t, damage.Offset, rejects[0].Offset+int64(rejects[0].Column)-1)
+		}
+	}
+	require.NotZero(t, breaksInLine)
+}
+
+func TestFailingReaders(t *testing.T) {
+	failure := errors.New("the disk is on fire")
+	frames, _, rejects, err := readAll(t, io.MultiReader(strings.NewReader("(1.0) a 100#\n(1.0) a 100#11"), iotest.ErrReader(failure)), Options{})
+	require.ErrorIs(t, err, failure)
+	require.EqualError(t, err, "test.log: after 27 bytes of text: the disk is on fire")
+	require.Len(t, frames, 1)
+	require.Len(t, rejects, 1)
+	require.Equal(t, 15, rejects[0].Column)
+
+	_, _, _, err = readAll(t, iotest.ErrReader(failure), Options{})
+	require.ErrorIs(t, err, failure)
+	_, _, _, err = readAll(t, &dribble{strings.NewReader("(1.0) a 100#\n"), 0}, Options{})
+	require.ErrorIs(t, err, io.ErrNoProgress)
+}
+
+func TestOpen(t *testing.T) {
+	_, err := Open(filepath.Join(t.TempDir(), "missing.log"), Options{})
+	require.ErrorIs(t, err, os.ErrNotExist)
+	path := filepath.Join(t.TempDir(), "one.log")
+	require.NoError(t, os.WriteFile(path, []byte("(1.0) a 100#\n"), 0o600))
+	text, err := Open(path, Options{})
+	require.NoError(t, err)
+	require.Equal(t, path, text.Name())
+	n, err := text.Read(nil)
+	require.Zero(t, n)
+	require.NoError(t, err)
+	batch := make([]frame.Frame, 4)
+	n, err = text.Read(batch)
+	require.Equal(t, 1, n)
+	require.NoError(t, err)
+	for range 2 { // the end stays the end
+		n, err = text.Read(batch)
+		require.Zero(t, n)
+		require.ErrorIs(t, err, io.EOF)
+	}
+	require.NoError(t, text.Close())
+	require.NoError(t, text.Close())
 }
 
 // endless gives n bytes without a newline, then a record.
@@ -201,9 +199,10 @@ func (e *endless) Read(p []byte) (int, error) {
 
 // A line of a gigabyte is one malformed record; nothing of its size is kept.
 func TestEndlessLine(t *testing.T) {
-	source := &endless{left: 1 << 30, tail: "\n(1.0) can0 123#11\n"}
-	text := NewText("test.log", source, Options{})
+	text := NewText("test.log", &endless{left: 1 << 30, tail: "\n(1.0) can0 123#11\n"}, Options{})
 	batch := make([]frame.Frame, 4)
+	var before, after runtime.MemStats
+	runtime.ReadMemStats(&before)
 	total := 0
 	for {
 		n, err := text.Read(batch)
@@ -213,109 +212,109 @@ func TestEndlessLine(t *testing.T) {
 			break
 		}
 	}
+	runtime.ReadMemStats(&after)
 	require.Equal(t, 1, total)
 	require.Equal(t, frame.Counts{Records: 2, Malformed: 1, Bytes: 1<<30 + 19}, text.Counts())
-	require.Len(t, text.blocks.buf, blockSize+maxLine+slack+64, "the buffer never grows")
+	require.Less(t, after.TotalAlloc-before.TotalAlloc, uint64(1<<20))
+
+	// An endless comment is no record, and an endless last line is one.
+	for start, want := range map[string]frame.Counts{
+		"# ": {Bytes: 100002},
+		"x":  {Records: 1, Malformed: 1, Bytes: 100001},
+	} {
+		_, source, _, err := readAll(t, io.MultiReader(strings.NewReader(start), &endless{left: 100000}), Options{})
+		require.NoError(t, err)
+		require.Equal(t, want, source.Counts())
+	}
+}
+
+// However the reader below splits the text, it comes to the same.
+func TestPiecesMakeNoDifference(t *testing.T) {
+	random := rand.New(rand.NewPCG(1, 2))
+	var b strings.Builder
+	for i := range 300 {
+		switch random.IntN(12) {
+		case 0:
+			b.WriteString("# comment")
+		case 1:
+			b.WriteString("(1.5) can0 123#1")
+		case 2: // at the border of what a line can be
+			b.WriteString(strings.Repeat("x", maxLine-2+random.IntN(5)))
+		case 3:
+			b.WriteString("#" + strings.Repeat("x", maxLine-2+random.IntN(5)))
+		case 4:
+			b.WriteString(strings.Repeat("y", random.IntN(20000)))
+		case 5:
+			b.WriteString("can0 123#11" + strings.Repeat(" ", maxLine-13+random.IntN(5)))
+		default:
+			fmt.Fprintf(&b, "(%d.%06d) can0 %03X#%04X", i/40, i, i, i)
+		}
+		b.WriteString([]string{"\n", "\r\n"}[random.IntN(2)])
+	}
+	b.WriteString("(7.000000) can0 123#11")
+	text := b.String()
+	frames, source, rejects, err := readAll(t, strings.NewReader(text), Options{})
+	require.NoError(t, err)
+	require.Greater(t, len(frames), 100)
+	require.Greater(t, len(rejects), 50)
+	require.Equal(t, int64(strings.Count(text, "\n")+1), source.Counts().Records+source.OtherLines(), "every line is accounted for")
+	for _, size := range []int{3, 100, maxLine - 1, maxLine, maxLine + 1, 32 << 10} {
+		again, source2, rejects2, err := readAll(t, &dribble{strings.NewReader(text), size}, Options{})
+		require.NoError(t, err)
+		require.Equal(t, frames, again, size)
+		require.Equal(t, rejects, rejects2, size)
+		require.Equal(t, source.Counts(), source2.Counts())
+		require.Equal(t, source.OtherLines(), source2.OtherLines())
+	}
+}
+
+// Bytes of no meaning are rejected line by line.
+func TestNoise(t *testing.T) {
+	random := rand.New(rand.NewPCG(3, 4))
+	noise := make([]byte, 1<<20)
+	for i := range noise {
+		noise[i] = byte(random.Uint32())
+	}
+	noise[0], noise[len(noise)-1] = 'x', 'x' // no archive, no line end
+	_, source, rejects, err := readAll(t, bytes.NewReader(noise), Options{})
+	require.NoError(t, err)
+	require.Equal(t, int64(len(noise)), source.Counts().Bytes)
+	require.Equal(t, int64(bytes.Count(noise, []byte("\n"))+1), source.Counts().Records+source.OtherLines())
+	require.Greater(t, len(rejects), 4000)
+	zeros, source, _, err := readAll(t, bytes.NewReader(make([]byte, 1<<20)), Options{})
+	require.NoError(t, err)
+	require.Empty(t, zeros)
+	require.Equal(t, int64(1), source.Counts().Malformed)
+}
+
+func TestManyInterfaces(t *testing.T) {
+	var text strings.Builder
+	for i := range maxInterfaces + 2 {
+		fmt.Fprintf(&text, "(1.000000) if%d 123#\n(1.000000) if%d 123#\n", i, i)
+	}
+	frames, source, rejects, err := readAll(t, strings.NewReader(text.String()), Options{})
+	require.NoError(t, err)
+	require.Len(t, source.Interfaces(), maxInterfaces)
+	for i, f := range frames {
+		require.Equal(t, i/2, int(f.Bus))
+	}
+	require.Len(t, rejects, 4)
+	require.Equal(t, "test.log:8193:12: this is the interface number 4097: expected one of the 4096 interfaces seen so far", rejects[0].Error())
 }
 
 func TestReadingAllocatesNothing(t *testing.T) {
-	line := "(1699999999.123456) can0 123#1122334455667788\n"
-	text := NewText("test.log", &endless{tail: strings.Repeat(line, 50000)}, Options{})
-	batch := make([]frame.Frame, 100)
-	require.Zero(t, testing.AllocsPerRun(100, func() {
-		if n, err := text.Read(batch); n == 0 || err != nil {
-			t.Fatal(n, err)
-		}
-	}))
-}
-
-func TestChainSharesInterfaces(t *testing.T) {
-	one := NewText("a", strings.NewReader("(1.0) can1 100#\n(1.0) can0 100#\n"), Options{})
-	two := NewText("b", strings.NewReader("(1.0) can0 100#\n(1.0) can2 100#\n"), Options{})
-	chain := NewChain(one, two)
-	batch := make([]frame.Frame, 10)
-	var buses []uint16
-	for {
-		n, err := chain.Read(batch)
-		for _, f := range batch[:n] {
-			buses = append(buses, f.Bus)
-		}
-		if err != nil {
-			break
-		}
-	}
-	require.Equal(t, []uint16{0, 1, 1, 2}, buses)
-	require.Equal(t, []string{"can1", "can0", "can2"}, chain.Interfaces())
-	require.Equal(t, int64(4), chain.Counts().Records)
-	require.NoError(t, chain.Close())
-}
-
-// logText writes a frame in log form.
-func logText(f *frame.Frame, iface string) string {
-	id := fmt.Sprintf("%03X", f.ID)
-	if f.Flags&frame.Extended != 0 {
-		id = fmt.Sprintf("%08X", f.ID)
-	}
-	body := fmt.Sprintf("#%X", f.Payload())
-	switch {
-	case f.Flags&frame.Remote != 0:
-		body = fmt.Sprintf("#R%d", f.DLC)
-	case f.Flags&frame.FD != 0:
-		flags := 0
-		if f.Flags&frame.BitRateSwitch != 0 {
-			flags |= 1
-		}
-		if f.Flags&frame.ErrorPassive != 0 {
-			flags |= 2
-		}
-		body = fmt.Sprintf("##%d%X", flags, f.Payload())
-	}
-	return fmt.Sprintf("(%d.%09d) %s %s%s\n", f.Time/1e9, f.Time%1e9, iface, id, body)
-}
-
-func TestWrittenFramesComeBack(t *testing.T) {
-	rapid.Check(t, func(t *rapid.T) {
-		var text strings.Builder
-		var want []frame.Frame
-		for i := range rapid.IntRange(1, 20).Draw(t, "frames") {
-			f := frame.Frame{Time: rapid.Int64Range(0, 4e18).Draw(t, "time"), Record: int64(i + 1), Offset: int64(text.Len())}
-			if rapid.Bool().Draw(t, "extended") {
-				f.Flags = frame.Extended
+	for _, line := range []string{
+		"(1699999999.123456) can0 123#1122334455667788\n",
+		"(1699999999.123456789) can_chassis 18DAF110##1112233445566778899001122 R\r\n",
+		" (1699999999.123456)  can0  RX - -  123   [8]  11 22 33 44 55 66 77 88   '.\"3DUfw.'\n",
+		" (2023-11-14 22:13:19.123456)  can0  123   [3]  33`22`11   `3\".`\n",
+	} {
+		text := NewText("test.log", &endless{tail: strings.Repeat(line, 50000)}, Options{})
+		batch := make([]frame.Frame, 100)
+		require.Zero(t, testing.AllocsPerRun(100, func() {
+			if n, err := text.Read(batch); n == 0 || err != nil {
+				t.Fatal(n, err)
 			}
-			f.ID = rapid.Uint32Range(0, map[bool]uint32{false: 1<<11 - 1, true: 1<<29 - 1}[f.Flags != 0]).Draw(t, "id")
-			f.DLC = uint8(rapid.IntRange(0, 8).Draw(t, "dlc"))
-			switch rapid.IntRange(0, 2).Draw(t, "kind") {
-			case 1:
-				f.Flags |= frame.Remote
-			case 2:
-				f.DLC = uint8(rapid.IntRange(0, 15).Draw(t, "fd dlc"))
-				f.Flags |= frame.FD | rapid.SampledFrom([]frame.Flags{0, frame.BitRateSwitch, frame.ErrorPassive}).Draw(t, "fd flags")
-			}
-			if f.Flags&frame.Remote == 0 {
-				f.Len, _ = frame.LenOfDLC(f.DLC, f.Flags&frame.FD != 0)
-				copy(f.Data[:], rapid.SliceOfN(rapid.Byte(), int(f.Len), int(f.Len)).Draw(t, "data"))
-			}
-			want = append(want, f)
-			text.WriteString(logText(&f, "can0"))
-		}
-		got, _, rejects, err := readAll(t, strings.NewReader(text.String()), Options{})
-		require.NoError(t, err)
-		require.Empty(t, rejects)
-		require.Equal(t, want, got)
-	})
-}
-
-// Classic frames also come back from the text that the CAN library writes.
-func TestLibraryText(t *testing.T) {
-	rapid.Check(t, func(t *rapid.T) {
-		in := can.Frame{IsExtended: rapid.Bool().Draw(t, "extended"), Length: uint8(rapid.IntRange(0, 8).Draw(t, "length"))}
-		in.ID = rapid.Uint32Range(0, map[bool]uint32{false: 1<<11 - 1, true: 1<<29 - 1}[in.IsExtended]).Draw(t, "id")
-		copy(in.Data[:], rapid.SliceOfN(rapid.Byte(), int(in.Length), int(in.Length)).Draw(t, "data"))
-		frames, _, rejects, err := readAll(t, strings.NewReader("(1.0) can0 "+in.String()+"\n"), Options{})
-		require.NoError(t, err)
-		require.Empty(t, rejects, in.String())
-		got, err := frames[0].ToLibrary()
-		require.NoError(t, err)
-		require.Equal(t, in, got)
-	})
+		}), line)
+	}
 }

@@ -1,6 +1,7 @@
 package frame
 
 import (
+	"strings"
 	"testing"
 
 	"github.com/stretchr/testify/require"
@@ -52,7 +53,13 @@ func TestErrorReports(t *testing.T) {
 		{0x002, make([]byte, 8), "arbitration lost"},
 		{0x204, []byte{0, 0x30, 0, 0, 0, 0, 128, 96}, "controller, error counters: receive error passive, transmit error passive; 128 transmit and 96 receive errors"},
 		{0x010, []byte{0, 0, 0, 0, 0x07, 0, 0, 0}, "transceiver: CANH short to ground"},
+		{0x010, []byte{0, 0, 0, 0, 0x80, 0, 0, 0}, "transceiver: CANL short to CANH"},
+		{0x010, []byte{0, 0, 0, 0, 0x47, 0, 0, 0}, "transceiver: CANH short to ground, CANL no wire"},
 		{0x010, []byte{0, 0, 0, 0, 0x99, 0, 0, 0}, "transceiver: transceiver state 0x99"},
+		{0x010, []byte{0, 0, 0, 0, 0x49, 0, 0, 0}, "transceiver: transceiver state 0x49"},
+		{0x010, make([]byte, 8), "transceiver"},
+		{0x004, []byte{0, 0x80}, "controller: bit 7"},
+		{0x008, []byte{0, 0, 0x04, 0x10}, "protocol violation: stuff error, at place 0x10"},
 		{0x008, []byte{0, 0, 0x81, 0x1B}, "protocol violation: bit error, while transmitting, in the ACK delimiter"},
 		{0x1A1, nil, "transmit timeout, no acknowledgement, bus error, controller restarted"},
 		{0x400, nil, "class bits 0x400"},
@@ -61,6 +68,55 @@ func TestErrorReports(t *testing.T) {
 		f := Frame{ID: c.id, Flags: Error, Len: uint8(len(c.data))}
 		copy(f.Data[:], c.data)
 		require.Equal(t, c.want, f.Report().String())
+	}
+}
+
+// Facts that programs ask for one by one; source as above.
+func TestReportFields(t *testing.T) {
+	f := Frame{ID: 0x21A, Flags: Error, Len: 8}
+	copy(f.Data[:], []byte{7, 0xFF, 0x80, 0x19, 0x07, 0xFF, 96, 127})
+	require.Equal(t, Report{
+		Class:    []string{"arbitration lost", "protocol violation", "transceiver", "error counters"},
+		Detail:   []string{"in bit 7", "while transmitting", "in the ACK slot", "CANH short to ground"},
+		Location: "ACK slot", Transceiver: "CANH short to ground",
+		Counters: true, TXErrors: 96, RXErrors: 127,
+	}, f.Report(), "the controller's byte means nothing without its class")
+	f.Len = 3 // bytes behind the length are undefined
+	require.Equal(t, Report{
+		Class:  []string{"arbitration lost", "protocol violation", "transceiver", "error counters"},
+		Detail: []string{"in bit 7", "while transmitting"},
+	}, f.Report())
+}
+
+// Every bit of each byte of detail has its phrase; source as above. The places
+// are those of the kernel's header, in its order.
+func TestReportTables(t *testing.T) {
+	report := func(class uint32, at int, value byte) string {
+		f := Frame{ID: class, Flags: Error, Len: 8}
+		clear(f.Data[:])
+		f.Data[at] = value
+		return strings.Join(f.Report().Detail, "|")
+	}
+	for bit, want := range []string{"receive overflow", "transmit overflow", "receive warning level", "transmit warning level", "receive error passive", "transmit error passive", "back to error active"} {
+		require.Equal(t, want, report(0x004, 1, 1<<bit))
+	}
+	for bit, want := range []string{"bit error", "form error", "stuff error", "can't send a dominant bit", "can't send a recessive bit", "overload", "active error", "while transmitting"} {
+		require.Equal(t, want, report(0x008, 2, 1<<bit))
+	}
+	for place, want := range map[byte]string{
+		0x03: "start of frame", 0x02: "ID bits 28 to 21", 0x06: "ID bits 20 to 18", 0x04: "substitute RTR", 0x05: "identifier extension",
+		0x07: "ID bits 17 to 13", 0x0F: "ID bits 12 to 5", 0x0E: "ID bits 4 to 0", 0x0C: "RTR", 0x0D: "reserved bit 1", 0x09: "reserved bit 0",
+		0x0B: "data length code", 0x0A: "data section", 0x08: "CRC sequence", 0x18: "CRC delimiter", 0x19: "ACK slot", 0x1B: "ACK delimiter",
+		0x1A: "end of frame", 0x12: "intermission",
+	} {
+		require.Equal(t, "in the "+want, report(0x008, 3, place))
+	}
+	require.Empty(t, report(0x008, 3, 0))
+	for state, want := range map[byte]string{
+		0x04: "CANH no wire", 0x05: "CANH short to battery", 0x06: "CANH short to supply", 0x07: "CANH short to ground",
+		0x40: "CANL no wire", 0x50: "CANL short to battery", 0x60: "CANL short to supply", 0x70: "CANL short to ground", 0x80: "CANL short to CANH",
+	} {
+		require.Equal(t, want, report(0x010, 4, state))
 	}
 }
 

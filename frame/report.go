@@ -10,8 +10,15 @@ import (
 type Report struct {
 	// Class has a phrase for each class bit, in the order of the bits.
 	Class []string
-	// Detail has what the payload adds.
+	// Detail has what the payload adds, a phrase for each fact; Location and
+	// Transceiver are also in it.
 	Detail []string
+	// Location is the field of the frame that was on the bus at a protocol
+	// violation, such as "data section"; empty if unknown.
+	Location string
+	// Transceiver is the state of the bus wires, such as "CANH short to
+	// ground"; empty if unknown.
+	Transceiver string
 	// Counters is set if the interface's error counters are valid.
 	Counters           bool
 	TXErrors, RXErrors uint8
@@ -60,13 +67,32 @@ var protocolPlaces = map[byte]string{
 	0x12: "intermission",
 }
 
-var transceiverStates = map[byte]string{
-	0x04: "CANH no wire", 0x05: "CANH short to battery", 0x06: "CANH short to supply", 0x07: "CANH short to ground",
-	0x40: "CANL no wire", 0x50: "CANL short to battery", 0x60: "CANL short to supply", 0x70: "CANL short to ground",
-	0x80: "CANL short to CANH",
+// transceiverHigh and transceiverLow are the states of the two wires: the low
+// nibble tells of CANH, the high one of CANL, and both may be faulty at once.
+var transceiverHigh = [16]string{
+	0x4: "CANH no wire", 0x5: "CANH short to battery", 0x6: "CANH short to supply", 0x7: "CANH short to ground",
 }
 
-// Report reads an error frame; payload bytes that it lacks count as 0.
+var transceiverLow = [16]string{
+	0x4: "CANL no wire", 0x5: "CANL short to battery", 0x6: "CANL short to supply", 0x7: "CANL short to ground",
+	0x8: "CANL short to CANH",
+}
+
+// transceiverState is empty for a state that says nothing.
+func transceiverState(state byte) string {
+	high, low := transceiverHigh[state&15], transceiverLow[state>>4]
+	switch {
+	case state == 0:
+		return ""
+	case state&15 != 0 && high == "", state>>4 != 0 && low == "":
+		return fmt.Sprintf("transceiver state 0x%02X", state)
+	case high != "" && low != "":
+		return high + ", " + low
+	}
+	return high + low
+}
+
+// Report reads an error frame. Payload bytes that it lacks say nothing.
 func (f *Frame) Report() Report {
 	var data [8]byte
 	copy(data[:], f.Data[:min(f.Len, 8)])
@@ -90,19 +116,19 @@ func (f *Frame) Report() Report {
 	if f.ID&classProtocol != 0 {
 		r.Detail = appendBits(r.Detail, data[2], protocolBits)
 		if place, ok := protocolPlaces[data[3]]; ok {
+			r.Location = place
 			r.Detail = append(r.Detail, "in the "+place)
 		} else if data[3] != 0 {
-			r.Detail = append(r.Detail, fmt.Sprintf("at place 0x%02X", data[3]))
+			r.Location = fmt.Sprintf("place 0x%02X", data[3])
+			r.Detail = append(r.Detail, "at "+r.Location)
 		}
 	}
-	if f.ID&classTransceiver != 0 && data[4] != 0 {
-		if state, ok := transceiverStates[data[4]]; ok {
-			r.Detail = append(r.Detail, state)
-		} else {
-			r.Detail = append(r.Detail, fmt.Sprintf("transceiver state 0x%02X", data[4]))
+	if f.ID&classTransceiver != 0 {
+		if r.Transceiver = transceiverState(data[4]); r.Transceiver != "" {
+			r.Detail = append(r.Detail, r.Transceiver)
 		}
 	}
-	if f.ID&classCounters != 0 {
+	if f.ID&classCounters != 0 && f.Len >= 8 {
 		r.Counters, r.TXErrors, r.RXErrors = true, data[6], data[7]
 	}
 	return r
