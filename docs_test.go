@@ -117,7 +117,7 @@ func runCommand(t *testing.T, bin, dir, command string) string {
 	if strings.HasPrefix(command, "make ") {
 		run.Dir = "" // it builds, which needs the whole module
 	}
-	run.Env = append(os.Environ(), "PATH="+bin+":"+os.Getenv("PATH"), "NO_COLOR=1", "LC_ALL=C", "MAKEFLAGS=", "BUSLOOM_BIN="+filepath.Join(bin, "busloom"))
+	run.Env = append(os.Environ(), "PATH="+bin+":"+os.Getenv("PATH"), "NO_COLOR=1", "LC_ALL=C", "MAKEFLAGS=", "MAKELEVEL=", "BUSLOOM_BIN="+filepath.Join(bin, "busloom"))
 	text, err := run.CombinedOutput()
 	got := string(text)
 	if got != "" && !strings.HasSuffix(got, "\n") {

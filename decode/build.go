@@ -32,13 +32,14 @@ const (
 	fromElsewhere               // further behind, or bit by bit
 )
 
-// step is one instruction of a message's program: take a value, or select. It
-// fills one cache line.
+// step is one instruction of a message's program: take a value, or select.
 type step struct {
-	signal   *Signal
-	coded    uint64 // opPlain: codes begin here; below it are plain values only
-	sign     uint64 // the sign bit of a two's complement value, else 0
-	mul, add int64
+	signal *Signal
+	// opPlain: the codes lie within coded to coded+span; a value outside is
+	// what the table says, with mul and add 0 for words.
+	coded, span uint64
+	sign        uint64 // the sign bit of a two's complement value, else 0
+	mul, add    int64
 	// far is what is needed less often.
 	far *farStep
 
@@ -301,14 +302,17 @@ func (st *step) place(p bits.Place) {
 // setOp finds the cheapest instruction for a signal.
 func (b *builder) setOp(st *step, s *Signal) {
 	st.op = opGeneral
+	// Without codes the range is one value that no signal has; a signal of 64
+	// bits may have it, and is then looked up for nothing.
 	st.coded = ^uint64(0)
 	if len(s.codes) > 0 {
 		st.coded = s.codes[0].low
+		st.span = s.codes[len(s.codes)-1].high - st.coded
 	}
 	switch s.kind {
 	case schema.Flag, schema.States:
 		if s.width <= tableWidth {
-			st.op, st.coded = opPlain, ^uint64(0)
+			st.op, st.coded, st.span = opPlain, ^uint64(0), 0
 			st.mask = uint8(1<<s.width - 1)
 			st.table = uint32(len(b.plan.meanings))
 			for raw := range uint64(1) << s.width {

@@ -105,12 +105,11 @@ func (c *run) steps(program []step, values []Value, n int) int {
 		switch st.op {
 		case opPlain:
 			m := meanings[st.table+uint32(uint8(raw)&st.mask)]
-			if raw >= st.coded {
-				m = st.signal.search(raw)
-			}
 			num := (int64(raw^st.sign)-int64(st.sign))*st.mul + st.add
-			if m.state() != Number {
-				num = 0
+			if raw-st.coded <= st.span {
+				if m = st.signal.search(raw); m.state() != Number {
+					num = 0
+				}
 			}
 			v.Num, v.State, v.Index = num, m.state(), m.index()
 		case opText:

@@ -10,6 +10,7 @@ import (
 type Tracker struct {
 	plan    *Plan
 	totals  Totals
+	record  int64                      // number of the last record
 	last    []counterState             // by message
 	senders []map[uint32]*counterState // by message, for identifiers with open fields
 }
@@ -66,6 +67,13 @@ func (t *Tracker) Totals() *Totals { return &t.totals }
 
 // Observe takes the next record: it judges its counter and counts it.
 func (t *Tracker) Observe(r *Record) {
+	if r.Frame.Record <= t.record {
+		// Record numbers begin anew with each file: what its counters were
+		// before says nothing.
+		clear(t.last)
+		clear(t.senders)
+	}
+	t.record = r.Frame.Record
 	t.totals.Classes[r.Class]++
 	m := r.Message
 	switch r.Class {

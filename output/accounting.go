@@ -12,7 +12,7 @@ import (
 // which add up to what was read, and what was noticed about the decoded ones.
 func Accounting(t *decode.Totals, skipped int64) string {
 	var b strings.Builder
-	fmt.Fprintf(&b, "%d records read = %d decoded", t.Sum()+skipped, t.Classes[decode.Decoded])
+	fmt.Fprintf(&b, "%s read = %d decoded", counted(t.Sum()+skipped, "record", "records"), t.Classes[decode.Decoded])
 	for _, c := range []decode.Class{decode.Undescribed, decode.RemoteFrame, decode.ErrorFrame, decode.Unmapped} {
 		if n := t.Classes[c]; n > 0 || c == decode.Undescribed {
 			fmt.Fprintf(&b, " + %d %s", n, plural(n, className(c)))

@@ -7,7 +7,7 @@ import (
 )
 
 // changes lets through only values that differ from the signal's last one, and
-// records whose protection failed. Identifiers of a family have last values of
+// records whose protection failed. Counters and checksums don't count. Identifiers of a family have last values of
 // their own.
 type changes struct {
 	to     Formatter
@@ -74,6 +74,9 @@ func (c *changes) Record(dst []byte, r *decode.Record) []byte {
 		v := &r.Values[i]
 		last := &lasts[v.Signal.Index-r.Message.Signals[0].Index]
 		same := last.state == v.State && last.raw == v.Raw
+		if isProtection(v.Signal) {
+			continue // it changes by its nature
+		}
 		if v.State == decode.Text || v.State == decode.Octets {
 			c.text = v.Signal.AppendText(c.text[:0], v, r.Frame)
 			same = last.state == v.State && bytes.Equal(last.text, c.text)

@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"busloom/bits"
+	"busloom/unit"
 )
 
 // Draw writes the bit layout of a message: one table of bytes and bits for
@@ -32,6 +33,7 @@ func (m *Message) Draw(w io.Writer) error {
 		fmt.Fprintln(&b)
 		drawLegend(&b, g.signals, keys)
 	}
+	fmt.Fprintf(&b, "\n  upper case: heaviest bit   -: named unused   .: nothing described%s\n", map[bool]string{true: " in this branch"}[len(groups) > 1])
 	_, err := io.WriteString(w, b.String())
 	return err
 }
@@ -205,12 +207,12 @@ func (s *Signal) formula() string {
 	plain := s.Affine.A.IsInt() && s.Affine.A.Num().IsInt64() && s.Affine.A.Num().Int64() == 1 && s.Affine.B.Sign() == 0
 	text := "raw"
 	if !plain {
-		text = "raw * " + s.Affine.A.RatString()
+		text = "raw * " + unit.FormatExact(s.Affine.A)
 		switch s.Affine.B.Sign() {
 		case 1:
-			text += " + " + s.Affine.B.RatString()
+			text += " + " + unit.FormatExact(s.Affine.B)
 		case -1:
-			text += " - " + strings.TrimPrefix(s.Affine.B.RatString(), "-")
+			text += " - " + strings.TrimPrefix(unit.FormatExact(s.Affine.B), "-")
 		}
 	}
 	if s.Curve != nil {
@@ -252,4 +254,31 @@ func (m *Message) describeSize() string {
 		text = "FD, " + text
 	}
 	return text
+}
+
+// List writes a line for each message: identifier, name, bus, length, senders
+// and period.
+func (n *Network) List(w io.Writer) error {
+	var b strings.Builder
+	var rows [][5]string
+	var wide [5]int
+	for _, m := range n.Messages {
+		senders := strings.Join(ecuNames(m.Senders), ", ")
+		if m.AnySender {
+			senders = "any"
+		}
+		row := [5]string{m.ID.describe(), m.Name, m.Bus.Name, m.describeSize(), senders}
+		if m.Timing.Period > 0 {
+			row[4] += fmt.Sprintf(" every %s", m.Timing.Period)
+		}
+		rows = append(rows, row)
+		for i, c := range row {
+			wide[i] = max(wide[i], len(c))
+		}
+	}
+	for _, r := range rows {
+		fmt.Fprintf(&b, "%-*s  %-*s  %-*s  %-*s  %s\n", wide[0], r[0], wide[1], r[1], wide[2], r[2], wide[3], r[3], r[4])
+	}
+	_, err := io.WriteString(w, b.String())
+	return err
 }

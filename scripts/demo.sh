@@ -19,7 +19,8 @@ say "Every record of the capture is accounted for"
 cat <<'NEXT'
 
 == What to try next
-  bin/busloom decode --format summary --only WheelSpeeds schemas/heron.bus testdata/heron/wet_stop_bad_ring.log.gz
+  bin/busloom decode --map can0=chassis --map can1=powertrain --map can2=body \\
+      --format summary --only WheelSpeeds schemas/heron.bus testdata/heron/wet_stop_bad_ring.log.gz
       the same stop with a damaged pickup ring: one wheel stands out
   bin/busloom draw schemas/heron.bus WheelSpeeds
       where each bit of the message sits

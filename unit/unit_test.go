@@ -2,6 +2,8 @@ package unit
 
 import (
 	"math/big"
+	"slices"
+	"strconv"
 	"strings"
 	"testing"
 
@@ -16,7 +18,9 @@ func number(t require.TestingT, text string) *big.Rat {
 }
 
 // Conversions by the SI Brochure, 9th edition (2019): tables 2, 4 and 8, the
-// prefixes of table 7, and the definition of degree Celsius.
+// prefixes of table 7, and the definition of degree Celsius; bar by the 8th
+// edition (2006), table 8; byte by IEC 80000-13. All from memory. The rest is
+// common practice.
 func TestConversions(t *testing.T) {
 	table := NewTable()
 	for _, c := range []struct{ from, to, a, b string }{
@@ -47,6 +51,19 @@ func TestConversions(t *testing.T) {
 		{"F", "C/V", "1", "0"},
 		{"H", "V*s/A", "1", "0"},
 		{"T", "V*s/m^2", "1", "0"},
+		{"Wh", "J", "3600", "0"},
+		{"W", "J/s", "1", "0"},
+		{"N", "kg*m/s^2", "1", "0"},
+		{"Pa", "N/m^2", "1", "0"},
+		{"Hz", "1/s", "1", "0"},
+		{"kHz", "1/ms", "1", "0"},
+		{"L", "dm^3", "1", "0"},
+		{"mL", "cm^3", "1", "0"},
+		{"byte", "bit", "8", "0"},
+		{"Mbit/s", "kbyte/s", "125", "0"},
+		{"uF", "pF", "1000000", "0"},
+		{"turn", "deg", "360", "0"},
+		{"mrad", "rad", "1/1000", "0"},
 	} {
 		from, err := table.Lookup(c.from)
 		require.NoError(t, err, c.from)
@@ -95,28 +112,124 @@ func TestLookupErrors(t *testing.T) {
 		{"KM", "there is no unit KM"},
 		{"g/km/h", "two slashes"},
 		{"m^1", "power"},
+		{"m^10", "power"},
+		{"m^+2", "power"},
+		{"m^02", "power"},
+		{"m^", "power"},
+		{"1", "there is no unit 1"},
+		{"1*m", "there is no unit 1"},
+		{"m/1", "there is no unit 1"},
+		{"mbit", "there is no unit mbit"},
+		{"k%", "there is no unit"},
+		{"kmin", "there is no unit"},
+		{"mkm", "there is no unit"},
+		{"1/degC", "point"},
+		{"degC^2", "point"},
+		{"K/degC", "point"},
 		{"m^x", "power"},
 		{"degC/s", "point"},
 		{"degC*m", "point"},
 		{"mdegC", "there is no unit"},
-		{"", "there is no unit"},
-		{"m*", "there is no unit"},
+		{"", "a unit is missing"},
+		{"/s", "a unit is missing"},
+		{"m/", "a unit is missing"},
+		{"^2", "a unit is missing"},
+		{"m*", "a unit is missing"},
 		{strings.Repeat("m", 100), "longer"},
 	} {
 		_, err := table.Lookup(c.text)
 		require.ErrorContains(t, err, c.want, c.text)
 	}
-	var unknown *UnknownUnit
-	_, err := table.Lookup("KM/h")
-	require.ErrorAs(t, err, &unknown)
-	require.Equal(t, "km", unknown.Nearest)
-	u, err := table.Lookup("µs")
+}
+
+func TestNearestUnit(t *testing.T) {
+	table := NewTable()
+	for text, want := range map[string]string{
+		"KM/h": "km", "KPA": "kPa", "RPM": "rpm", "Ohm": "ohm", "l/h": "L", "degc": "degC", "MOHM": "Mohm",
+		"kmh": "km/h", "kph": "km/h", "sec": "s", "Celsius": "degC", "Percent": "%", "mbit": "Mbit", "zzz": "",
+	} {
+		_, err := table.Lookup(text)
+		var unknown *UnknownUnit
+		require.ErrorAs(t, err, &unknown, text)
+		require.Equal(t, want, unknown.Nearest, text)
+	}
+	for slip, means := range slips {
+		_, err := table.Lookup(slip)
+		require.Error(t, err, "%s is a unit, so no slip", slip)
+		_, err = table.Lookup(means)
+		require.NoError(t, err, means)
+	}
+}
+
+func TestLettersBeyondASCII(t *testing.T) {
+	table := NewTable()
+	for text, want := range map[string]string{
+		"\u00b5s": "us", "\u03bcs": "us", "k\u03a9": "kohm", "k\u2126": "kohm", "°C": "degC", "°": "deg", "°/s": "deg/s", "V/\u00b5s": "V/us",
+	} {
+		u, err := table.Lookup(text)
+		require.NoError(t, err, text)
+		require.Equal(t, want, u.Symbol)
+		same, err := table.Lookup(want)
+		require.NoError(t, err)
+		require.Equal(t, same, u)
+	}
+}
+
+func TestDifference(t *testing.T) {
+	table := NewTable()
+	degC, err := table.Lookup("degC")
 	require.NoError(t, err)
-	require.Equal(t, "us", u.Symbol)
-	u, err = table.Lookup("°C")
+	require.True(t, degC.Point)
+	kelvin, err := table.Lookup("K")
 	require.NoError(t, err)
-	require.Equal(t, "degC", u.Symbol)
-	require.Equal(t, "K", u.Difference().Symbol)
+	require.Equal(t, "K", degC.Difference().Symbol)
+	a, b, exact, err := Convert(degC.Difference(), kelvin)
+	require.NoError(t, err)
+	require.True(t, exact)
+	require.Equal(t, "1", a.RatString())
+	require.Zero(t, b.Sign())
+	require.Equal(t, kelvin, kelvin.Difference())
+}
+
+// The prefixes of the SI Brochure, 9th edition (2019), table 7, as powers of
+// ten (from memory); micro is written u.
+func TestPrefixes(t *testing.T) {
+	table := NewTable()
+	want := map[string]int{"p": -12, "n": -9, "u": -6, "m": -3, "c": -2, "d": -1, "h": 2, "k": 3, "M": 6, "G": 9}
+	require.Len(t, siPrefixes, len(want))
+	base, err := table.Lookup("Pa")
+	require.NoError(t, err)
+	for p, power := range want {
+		u, err := table.Lookup(p + "Pa")
+		require.NoError(t, err, p)
+		a, _, exact, err := Convert(u, base)
+		require.NoError(t, err)
+		require.True(t, exact)
+		require.Equal(t, number(t, "1e"+strconv.Itoa(power)).String(), a.String(), p)
+	}
+}
+
+// No symbol can be read in two ways: as a unit and as a prefixed one, or with
+// two prefixes.
+func TestSymbolsAreUnambiguous(t *testing.T) {
+	seen := map[string]bool{"degC": true}
+	add := func(symbol string) {
+		require.False(t, seen[symbol], symbol)
+		seen[symbol] = true
+	}
+	for _, b := range builtin {
+		add(b.symbol)
+		for _, p := range b.prefixes {
+			add(string(p) + b.symbol)
+		}
+	}
+	table := NewTable()
+	for _, s := range table.Symbols() {
+		u, err := table.Lookup(s)
+		require.NoError(t, err, s)
+		require.Equal(t, s, u.Symbol)
+	}
+	require.True(t, slices.IsSorted(table.Symbols()))
 }
 
 func TestDefinedUnits(t *testing.T) {
@@ -141,6 +254,17 @@ func TestDefinedUnits(t *testing.T) {
 	require.True(t, exact)
 	require.Equal(t, "2/5", a.RatString())
 
+	for _, name := range []string{"", "_", "2nd", "a b", "x^2", "a*b", "a/b", "\u00b5x", "it's", "-"} {
+		require.ErrorContains(t, table.Define(name, nil, Unit{}), "can't name a unit", name)
+	}
+	// Defined units take no prefixes.
+	_, err = table.Lookup("ktooth")
+	require.Error(t, err)
+	require.NoError(t, table.Define("dozen", big.NewRat(12, 1), Unit{}))
+	dozen, err := table.Lookup("dozen")
+	require.NoError(t, err)
+	require.True(t, SameDimension(dozen, Unit{}))
+	require.Equal(t, "12", dozen.Factor.RatString())
 	require.Error(t, table.Define("lap", nil, Unit{}))
 	require.Error(t, table.Define("km", big.NewRat(1, 1), m))
 	require.Error(t, table.Define("nothing", new(big.Rat), m))
@@ -151,7 +275,7 @@ func TestDefinedUnits(t *testing.T) {
 
 func TestUnitArithmetic(t *testing.T) {
 	table := NewTable()
-	units := []string{"V", "mA", "ohm", "km/h", "rpm", "K", "%", "bar", "rad/s"}
+	units := []string{"V", "mA", "ohm", "km/h", "rpm", "K", "%", "bar", "rad/s", "1/s", "m/s^2", "kg*m^2"}
 	rapid.Check(t, func(t *rapid.T) {
 		u, err := table.Lookup(rapid.SampledFrom(units).Draw(t, "u"))
 		require.NoError(t, err)
@@ -159,9 +283,19 @@ func TestUnitArithmetic(t *testing.T) {
 		require.NoError(t, err)
 		product, err := Mul(u, v)
 		require.NoError(t, err)
+		quotient, err := Div(u, v)
+		require.NoError(t, err)
+		// The symbol of a result means the result.
+		for _, want := range []Unit{product, quotient} {
+			got, err := table.Lookup(want.Symbol)
+			require.NoError(t, err, want.Symbol)
+			require.Equal(t, want.Dim, got.Dim, want.Symbol)
+			require.Equal(t, want.PiPower, got.PiPower, want.Symbol)
+			require.Zero(t, want.Factor.Cmp(got.Factor), want.Symbol)
+		}
 		back, err := Div(product, v)
 		require.NoError(t, err)
-		require.Equal(t, u.Dim, back.Dim)
+		require.True(t, SameDimension(u, back))
 		a, b, exact, err := Convert(u, back)
 		require.NoError(t, err)
 		require.True(t, exact)
@@ -173,6 +307,28 @@ func TestUnitArithmetic(t *testing.T) {
 	_, err = Mul(degC, degC)
 	require.ErrorIs(t, err, ErrPoint)
 	require.True(t, Unit{}.IsPlain())
+	mps, err := table.Lookup("m/s")
+	require.NoError(t, err)
+	_, err = Div(mps, degC)
+	require.ErrorIs(t, err, ErrPoint)
+	_, err = Div(degC, mps)
+	require.ErrorIs(t, err, ErrPoint)
+
+	// What is below the slash stays below it: 1 % of 1 m/s isn't m/(s*%).
+	percent, err := table.Lookup("%")
+	require.NoError(t, err)
+	for _, c := range []struct {
+		op   func(u, v Unit) (Unit, error)
+		u, v Unit
+		want string
+	}{
+		{Mul, mps, percent, "m*%/s"}, {Div, mps, mps, "m*s/s*m"}, {Div, Unit{}, mps, "s/m"}, {Mul, Unit{}, mps, "m/s"},
+		{Mul, mps, Unit{}, "m/s"}, {Div, mps, Unit{}, "m/s"}, {Div, Unit{}, percent, "1/%"}, {Div, Unit{}, Unit{}, ""},
+	} {
+		got, err := c.op(c.u, c.v)
+		require.NoError(t, err)
+		require.Equal(t, c.want, got.Symbol)
+	}
 }
 
 // FuzzLookup: any text gives a unit or an error, and a unit's own symbol gives
@@ -190,5 +346,7 @@ func FuzzLookup(f *testing.F) {
 		again, err := table.Lookup(u.Symbol)
 		require.NoError(t, err)
 		require.Equal(t, u, again)
+		require.LessOrEqual(t, len(text), maxSymbol)
+		require.Positive(t, u.factor().Sign())
 	})
 }

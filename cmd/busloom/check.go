@@ -24,7 +24,7 @@ usage; 5 a file can't be read.`,
 		Example: `  busloom check schemas/heron.bus
   busloom check --quiet schemas/heron.bus       # without the notes
   busloom check --format json schemas/heron.bus # for an editor or a CI job`,
-		Args: cobra.MinimumNArgs(1),
+		Args: atLeast(1, "a description"),
 		RunE: func(_ *cobra.Command, args []string) error {
 			f := problemFormat(format)
 			if err := f.valid(); err != nil {

@@ -19,10 +19,13 @@ and draw take a database wherever they take a description.
 The form is documented in docs/database.md.`,
 		Example: `  busloom compile schemas/heron.bus -o heron.json
   busloom compile schemas/heron.bus -o - | sha256sum`,
-		Args: cobra.ExactArgs(1),
+		Args: exactly(1, "one description"),
 		RunE: func(_ *cobra.Command, args []string) error {
 			if out == "" {
 				return usageError("compile needs -o OUT (-o - for standard output)")
+			}
+			if err := checkNotInput(out, args[0]); err != nil {
+				return err
 			}
 			network, err := loadNetwork(std, args[0])
 			if err != nil {

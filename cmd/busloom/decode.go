@@ -60,11 +60,13 @@ Formats:
 Exit codes: 0 clean; 1 the description has errors; 2 wrong usage; 3 the capture
 had malformed records; 4 protection failures with --strict; 5 reading or
 writing failed; 130 interrupted. docs/output.md has the columns and classes.`,
-		Example: `  busloom decode --map can0=chassis schemas/heron.bus drive.log.gz
-  busloom decode --format csv --only 'WheelSpeeds.*' --unit km/h=m/s heron.bus drive.log
-  busloom decode --format summary --from +10 --to +20 heron.bus drive.log
-  busloom decode --format wide --step 100ms --only RoadSpeed heron.bus - < drive.log`,
-		Args: cobra.MinimumNArgs(2),
+		Example: `  busloom decode --map can0=chassis --map can1=powertrain --map can2=body \
+      schemas/heron.bus testdata/heron/wet_stop.log.gz
+  busloom decode --map can0=chassis --only 'WheelSpeeds.*' --unit km/h=m/s \
+      --format csv schemas/heron.bus testdata/heron/wet_stop.log.gz
+  busloom decode --format summary --from +10 --to +20 one-bus.bus drive.log
+  busloom decode --format wide --step 100ms one-bus.bus - < drive.log`,
+		Args: atLeast(2, "a description and a capture"),
 		RunE: func(cmd *cobra.Command, args []string) error {
 			return runDecode(cmd.Context(), std, &f, args[0], args[1:])
 		},
@@ -89,6 +91,12 @@ writing failed; 130 interrupted. docs/output.md has the columns and classes.`,
 }
 
 func runDecode(ctx context.Context, std *streams, f *decodeFlags, description string, captures []string) error {
+	if err := checkNotInput(f.out, append([]string{description}, captures...)...); err != nil {
+		return err
+	}
+	if f.rejects < 0 {
+		return usageError("--show-malformed %d is below zero", f.rejects)
+	}
 	window, err := parseWindow(f.from, f.to)
 	if err != nil {
 		return err
@@ -215,7 +223,7 @@ func pairs(flag string, values []string) (map[string]string, error) {
 	for _, v := range values {
 		a, b, ok := strings.Cut(v, "=")
 		if !ok || a == "" || b == "" {
-			return nil, usageError("--%s %s: it is written a=b", flag, v)
+			return nil, usageError("--%s %s: it is written %s", flag, v, map[string]string{"map": "INTERFACE=BUS, such as can0=chassis", "unit": "UNIT=UNIT, such as km/h=m/s"}[flag])
 		}
 		if _, twice := out[a]; twice {
 			return nil, usageError("--%s names %s twice", flag, a)

@@ -13,20 +13,24 @@ import (
 
 func drawCommand(std *streams) *cobra.Command {
 	return &cobra.Command{
-		Use:   "draw FILE MESSAGE...",
+		Use:   "draw FILE [MESSAGE...]",
 		Short: "Print the bit layout of messages",
 		Long: `Draw prints a message's frame as a table of bytes and bits with a key: where
 each value sits, its heaviest bit in upper case. Messages are named as in the
-description, or by identifier (0x1A0).`,
-		Example: `  busloom draw schemas/heron.bus WheelSpeeds
+description, or by identifier (0x1A0). Without a message it lists them all.`,
+		Example: `  busloom draw schemas/heron.bus
+  busloom draw schemas/heron.bus WheelSpeeds
   busloom draw heron.json 0x1A0`,
-		Args: cobra.MinimumNArgs(2),
+		Args: atLeast(1, "a description and the messages to draw"),
 		RunE: func(_ *cobra.Command, args []string) error {
 			network, err := loadNetwork(std, args[0])
 			if err != nil {
 				return err
 			}
 			var b bytes.Buffer
+			if len(args) == 1 {
+				network.List(&b)
+			}
 			for _, name := range args[1:] {
 				found := network.FindMessages(name)
 				if len(found) == 0 {

@@ -1,6 +1,7 @@
 package main
 
 import (
+	"errors"
 	"fmt"
 	"io"
 	"os"
@@ -33,7 +34,11 @@ func createOutput(std *streams, path string) (*outputFile, error) {
 	}
 	f, err := os.CreateTemp(filepath.Dir(path), "."+filepath.Base(path)+".*")
 	if err != nil {
-		return nil, ioError(fmt.Errorf("can't write beside %s: %w", path, err))
+		var where *os.PathError
+		if errors.As(err, &where) {
+			err = where.Err
+		}
+		return nil, ioError(fmt.Errorf("can't write %s: %w", path, err))
 	}
 	return &outputFile{Writer: f, file: f, path: path}, nil
 }
@@ -73,4 +78,18 @@ func (o *outputFile) drop() {
 		o.file.Close()
 		os.Remove(o.file.Name())
 	}
+}
+
+// checkNotInput refuses to write over a file that is read.
+func checkNotInput(out string, inputs ...string) error {
+	to, err := os.Stat(out)
+	if out == "" || err != nil || !to.Mode().IsRegular() {
+		return nil
+	}
+	for _, in := range inputs {
+		if from, err := os.Stat(in); err == nil && os.SameFile(from, to) {
+			return usageError("-o %s would overwrite what is read", out)
+		}
+	}
+	return nil
 }

@@ -23,7 +23,7 @@ is left as it is. FILE - is standard input.`,
 		Example: `  busloom fmt -w schemas/heron.bus schemas/common/*.bus
   busloom fmt --check schemas/heron.bus
   busloom fmt - < draft.bus`,
-		Args: cobra.MinimumNArgs(1),
+		Args: atLeast(1, "a description, or - for standard input"),
 		RunE: func(_ *cobra.Command, args []string) error {
 			if write && check {
 				return usageError("-w and --check exclude each other")

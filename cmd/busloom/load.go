@@ -1,6 +1,7 @@
 package main
 
 import (
+	"bytes"
 	"fmt"
 	"io"
 	"os"
@@ -47,6 +48,9 @@ func readNetwork(path string) (*schema.Network, *diag.List, error) {
 	text, err := readDescription(path)
 	if err != nil {
 		return nil, nil, ioError(err)
+	}
+	if bytes.HasPrefix(text, []byte{0x1f, 0x8b}) || bytes.IndexByte(text[:min(len(text), 4096)], 0) >= 0 {
+		return nil, nil, ioError(fmt.Errorf("%s isn't text: a description or a database is wanted here", path))
 	}
 	if schema.IsDatabase(text) {
 		network, list := schema.LoadDatabase(diag.NewFile(path, text))
