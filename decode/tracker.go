@@ -67,7 +67,7 @@ func (t *Tracker) Totals() *Totals { return &t.totals }
 
 // Observe takes the next record: it judges its counter and counts it.
 func (t *Tracker) Observe(r *Record) {
-	if r.Frame.Record <= t.record {
+	if r.Frame.Record == 1 && t.record > 0 {
 		// Record numbers begin anew with each file: what its counters were
 		// before says nothing.
 		clear(t.last)

@@ -84,6 +84,24 @@ func TestAccountingAddsUp(t *testing.T) {
 	require.Equal(t, int64(1), totals.ProtectionFailures())
 }
 
+// With each file the record numbers and the counters begin anew.
+func TestCountersBeginWithTheirFile(t *testing.T) {
+	p := planOf(t, fmt.Sprintf(counted, ""), Options{})
+	tracker := NewTracker(p)
+	var r Record
+	for i, c := range []struct {
+		record int64
+		data   string
+		want   Check
+	}{{1, "01", First}, {2, "04", Good}, {1, "0D", First}, {2, "01", Good}, {3, "0A", Lost}} {
+		f := received(t, "100", c.data)
+		f.Record = c.record
+		p.Decode(f, &r)
+		tracker.Observe(&r)
+		require.Equal(t, c.want, r.Counter, "frame %d", i)
+	}
+}
+
 // Senders of one family count each for itself.
 func TestCountersBySender(t *testing.T) {
 	p := planOf(t, `busloom 1
