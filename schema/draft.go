@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"slices"
 	"strconv"
-	"strings"
 
 	"busloom/bits"
 	"busloom/diag"
@@ -347,8 +346,8 @@ func (c *compiler) groupKeys(d *draft, g *syntax.Group) (keys []string, ok bool)
 		return nil, false
 	}
 	for _, k := range g.Keys {
-		if slices.Contains(keys, k.Text) {
-			c.report(diag.DuplicateName, k.Span, fmt.Sprintf("the key %s is given twice", k.Text), "rename one of the two")
+		if i := slices.Index(keys, k.Text); i >= 0 {
+			c.report(diag.DuplicateName, k.Span, fmt.Sprintf("the key %s is given twice", k.Text), "rename one of the two").Also(g.Keys[i].Span, "first given here")
 			d.lost = true
 			continue
 		}
@@ -375,7 +374,7 @@ func (c *compiler) expandShape(d *draft, sh *shape, origin syntax.Number, offset
 		if s.shape != nil {
 			where = "the shape " + s.shape.name
 		}
-		c.report(diag.PastEnd, origin.Span, fmt.Sprintf("%s needs the bytes %d to %d, but %s has %s", strings.TrimSuffix(v.name, "."), shift, shift+sh.size-1, where, describeBytes(size)),
+		c.report(diag.PastEnd, origin.Span, fmt.Sprintf("%s reaches byte %d, but %s has %s", v.name, shift+sh.size-1, where, describeBytes(size)),
 			"move it, or make room for it").Also(sh.span, fmt.Sprintf("the shape %s has %s", sh.name, counted(sh.size, "byte")))
 		d.lost = true
 		return false

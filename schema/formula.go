@@ -314,9 +314,9 @@ func (e *evaluator) sum(x *syntax.Operation, l, r reduced) (reduced, bool) {
 }
 
 func (e *evaluator) noPoints(x *syntax.Operation, l, r reduced) bool {
-	side, v := x.Left, l
+	v := l
 	if r.unit.Point {
-		side, v = x.Right, r
+		v = r
 	}
 	if !v.unit.Point {
 		return true
@@ -325,8 +325,7 @@ func (e *evaluator) noPoints(x *syntax.Operation, l, r reduced) bool {
 	if x.Op == '/' {
 		word = "divided"
 	}
-	e.c.report(diag.PointArithmetic, x.Span, fmt.Sprintf("%s is in %s, a point on a scale, which can't be %s", side.ExprSpan().Text(), v.unit.Symbol, word),
-		fmt.Sprintf("write 0 %s + raw * ... K", v.unit.Symbol))
+	e.c.report(diag.PointArithmetic, x.Span, fmt.Sprintf("%s is a point on a scale, which can't be %s", v.unit.Symbol, word), fmt.Sprintf("write 0 %s + raw * ... K", v.unit.Symbol))
 	return false
 }
 

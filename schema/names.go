@@ -2,6 +2,8 @@ package schema
 
 import (
 	"fmt"
+	"path"
+	"path/filepath"
 	"sort"
 	"strings"
 
@@ -237,7 +239,7 @@ func (c *compiler) unknown(src *source, space namespace, prefix string, name syn
 	bare := strings.TrimPrefix(strings.TrimPrefix(nsWords[space], "an "), "a ")
 	if sym := c.symbols[symbolKey{space, name.Text}]; sym != nil {
 		sym.used = true
-		remedy := "write use with the path of that file"
+		remedy := fmt.Sprintf("write use %q", relativePath(src.name, sym.src.name))
 		for _, u := range src.uses {
 			if u.target == sym.src {
 				u.needed = true
@@ -298,6 +300,15 @@ func pathText(p syntax.Path) string {
 		}
 	}
 	return b.String()
+}
+
+// relativePath is the path by which the file from would use the file to.
+func relativePath(from, to string) string {
+	rel, err := filepath.Rel(filepath.FromSlash(path.Dir(from)), filepath.FromSlash(to))
+	if err != nil {
+		return to
+	}
+	return filepath.ToSlash(rel)
 }
 
 // noteUnused tells what nothing refers to. It runs on sound networks only: a

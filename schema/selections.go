@@ -97,11 +97,11 @@ func (c *compiler) findSelector(d *draft, s *selection) {
 	kind := m.sig.Kind
 	if (kind != Unsigned && kind != States && kind != Flag) || m.sig.Fixed != nil {
 		s.broken = true
-		phrase := kindPhrase(kind)
+		problem := fmt.Sprintf("a member of the kind %s can't select", kindPhrase(kind))
 		if m.sig.Fixed != nil {
-			phrase = "always the same value"
+			problem = fmt.Sprintf("%s is always %d, so it has nothing to select", m.path, *m.sig.Fixed)
 		}
-		c.report(diag.BadSelector, s.tree.Selector.Span, fmt.Sprintf("%s is %s, which can't select", m.path, phrase), "select by an unsigned number, states or a flag").
+		c.report(diag.BadSelector, s.tree.Selector.Span, problem, "select by an unsigned number, states or a flag").
 			Also(m.tree.Name.Span, "declared here")
 	}
 }

@@ -145,11 +145,13 @@ func (s *Signal) back(v *big.Rat) (*big.Rat, bool) {
 func (c *compiler) checkRange(m *member) bool {
 	s, w := m.sig, m.tree.Within
 	lowQ, highQ := w.Low, w.High
+	span := w.Low.Span.To(w.High.Span)
+	// One unit holds for both ends; a mistake in it is one of the whole range.
 	if lowQ.Unit == nil {
-		lowQ.Unit = highQ.Unit
+		lowQ.Unit, lowQ.Span = highQ.Unit, span
 	}
 	if highQ.Unit == nil {
-		highQ.Unit = lowQ.Unit
+		highQ.Unit, highQ.Span = lowQ.Unit, span
 	}
 	if lowQ.Number.Value == nil || highQ.Number.Value == nil {
 		return false
@@ -167,7 +169,7 @@ func (c *compiler) checkRange(m *member) bool {
 		return false
 	}
 	if low.Cmp(high) > 0 {
-		c.report(diag.EmptyRange, w.Span, fmt.Sprintf("the range %s is upside down", w.Span.Text()), "write the lower end first")
+		c.report(diag.EmptyRange, span, fmt.Sprintf("the range %s is upside down", span.Text()), "write the lower end first")
 		return false
 	}
 	s.Range = &Range{Low: low, High: high}

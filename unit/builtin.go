@@ -71,8 +71,9 @@ var common = []string{"km", "mm", "cm", "um", "kg", "mg", "ms", "us", "ns", "mA"
 
 // slips are spellings that letter case doesn't mend, in small letters.
 var slips = map[string]string{
-	"kmh": "km/h", "kph": "km/h", "kmph": "km/h", "kbps": "kbit/s", "mbps": "Mbit/s",
-	"sec": "s", "hr": "h", "day": "d", "gram": "g", "litre": "L", "liter": "L", "lux": "lx",
-	"degree": "deg", "celsius": "degC", "kelvin": "K", "rev": "turn", "volt": "V", "amp": "A",
-	"bits": "bit", "bytes": "byte", "percent": "%",
+	"kmh": "km/h", "kph": "km/h", "kmph": "km/h", "mps": "m/s", "kbps": "kbit/s", "mbps": "Mbit/s",
+	"msec": "ms", "sec": "s", "second": "s", "seconds": "s", "hr": "h", "hour": "h", "hours": "h", "day": "d", "days": "d",
+	"gram": "g", "litre": "L", "litres": "L", "liter": "L", "lux": "lx", "rev": "turn", "hertz": "Hz",
+	"degree": "deg", "degrees": "deg", "celsius": "degC", "kelvin": "K",
+	"volt": "V", "volts": "V", "amp": "A", "ampere": "A", "bits": "bit", "bytes": "byte", "percent": "%", "pct": "%",
 }

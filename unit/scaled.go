@@ -2,6 +2,7 @@ package unit
 
 import (
 	"bytes"
+	"encoding/binary"
 	"math/big"
 	"math/bits"
 	"slices"
@@ -58,6 +59,9 @@ func AppendScaled(dst []byte, coef int64, decimals int) []byte {
 		u = -u
 	}
 	if decimals == 0 {
+		if u < 1e8 {
+			return dst[:n+put8(b, at, u)]
+		}
 		return dst[:n+putUint(b, at, u)]
 	}
 	p := powers[decimals]
@@ -79,6 +83,36 @@ func AppendScaled(dst []byte, coef int64, decimals int) []byte {
 		at--
 	}
 	return dst[:n+at]
+}
+
+// digits8 is the eight decimal digits of u (below 1e8), one in each byte, the
+// first in the lightest. It halves all parts at once: eight digits into two
+// times four, four times two, eight times one. The factors are 1/100 and 1/10
+// in fixed point, exact for parts of four and two digits.
+func digits8(u uint64) uint64 {
+	high := u / 10000
+	fours := high | (u-high*10000)<<32
+	hundreds := fours * 10486 >> 20 & 0x0000007f_0000007f
+	twos := hundreds | (fours-hundreds*100)<<16
+	tens := twos * 103 >> 10 & 0x000f_000f_000f_000f
+	return tens | (twos-tens*10)<<8
+}
+
+// ascii8 makes digits of digits8 letters.
+const ascii8 = 0x30303030_30303030
+
+// put8 writes u (below 1e8) from at on, without a branch on its length, and
+// returns where it ends.
+func put8(b *[scaledRoom]byte, at int, u uint64) int {
+	d := digits8(u)
+	zeros := bits.TrailingZeros64(d|1<<56) &^ 7 // of the front; the last digit stays
+	store8(b, at, (d|ascii8)>>zeros)
+	return at + 8 - zeros/8
+}
+
+// store8 writes eight bytes from at (below 16) on.
+func store8(b *[scaledRoom]byte, at int, d uint64) {
+	binary.LittleEndian.PutUint64(b[at&15:at&15+8], d)
 }
 
 // putUint writes u from at on and returns where it ends.

@@ -1,6 +1,7 @@
 package unit
 
 import (
+	"encoding/binary"
 	"fmt"
 	"math"
 	"math/big"
@@ -62,7 +63,7 @@ func TestScaledEdges(t *testing.T) {
 	for decimals := range MaxDecimals + 1 {
 		for _, p := range powers[:19] {
 			for _, d := range []int64{-1, 0, 1} {
-				for _, coef := range []int64{int64(p) + d, -int64(p) + d, math.MaxInt64 - int64(p) + 1, 1<<32 + d} {
+				for _, coef := range []int64{int64(p) + d, -int64(p) + d, math.MaxInt64 - int64(p) + 1, 1<<32 + d, 1e8 + d} {
 					got := AppendScaled(append(make([]byte, 0, 3+coef&31), "v=-"...), coef, decimals)
 					require.Equal(t, "v=-", string(got[:3]))
 					checkDecimal(t, string(got[3:]), big.NewInt(coef), decimals)
@@ -85,6 +86,19 @@ func TestInverses(t *testing.T) {
 				got, _ := bits.Mul64(u, inverses[n])
 				require.Equal(t, u/powers[n], got, "%d / 10^%d", u, n)
 			}
+		}
+	}
+}
+
+// The two halves of eight digits don't touch each other, so all four-digit
+// numbers in either half are all there is.
+func TestEightDigits(t *testing.T) {
+	for n := range uint64(10000) {
+		for _, u := range []uint64{n, n * 10000, n*10000 + 9999, 9999*10000 + n} {
+			var b [8]byte
+			binary.LittleEndian.PutUint64(b[:], digits8(u)|ascii8)
+			require.Equal(t, fmt.Sprintf("%08d", u), string(b[:]))
+			require.Equal(t, strconv.FormatUint(u, 10), string(AppendScaled(nil, int64(u), 0)))
 		}
 	}
 }
