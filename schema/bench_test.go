@@ -77,3 +77,29 @@ func TestMemoryIsLinear(t *testing.T) {
 	small, large := takes(100), takes(1600)
 	require.Less(t, large, small*1.3, "bytes for each message")
 }
+
+// Two selections of one selector with 256 branches on the same bits each: the
+// pairs of branches are many, those that may be there together few.
+func BenchmarkCompileBranches(b *testing.B) {
+	var text strings.Builder
+	text.WriteString("busloom 1\nbus chassis 500 kbit/s\necu Brake on chassis\necu Cluster on chassis\nmessage Test 0x100 on chassis, 8 bytes {\n  from Brake to Cluster\n  page at 0.7..0.0\n")
+	for _, part := range []string{"a", "b"} {
+		text.WriteString("  select page {\n")
+		for i := range 256 {
+			first := map[string]int{"a": 1, "b": 4}[part]
+			if i%2 == 1 {
+				first = 5 - first
+			}
+			fmt.Fprintf(&text, "    when %d { %s%dx at %d.7..%d.0  %s%dy at %d.7..%d.0  %s%dz at %d.7..%d.0 }\n", i,
+				part, i, first, first, part, i, first+1, first+1, part, i, first+2, first+2)
+		}
+		text.WriteString("  }\n")
+	}
+	text.WriteString("  unused 7.7..7.0\n}\n")
+	b.SetBytes(int64(text.Len()))
+	for b.Loop() {
+		network, list := Compile(MapFiles{"branches.bus": text.String()}, "branches.bus")
+		require.Zero(b, list.Len(), "%v", list.Sorted())
+		require.Equal(b, 1+2*256*3, network.CountSignals())
+	}
+}

@@ -125,6 +125,9 @@ func (c *compiler) defineCRCs() {
 			return
 		}
 		p := &crc.Params{Name: d.Name.Text, Width: int(width), ReflectIn: d.ReflectIn, ReflectOut: d.ReflectOut}
+		if d.Polynomial == nil && src.damaged {
+			return
+		}
 		if d.Polynomial == nil {
 			c.report(diag.BadCRC, d.Name.Span, fmt.Sprintf("%s has no polynomial", d.Name.Text), "write polynomial with its value, the top bit left out")
 			return

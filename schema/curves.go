@@ -26,14 +26,14 @@ func (c *compiler) defineCurves() {
 			c.report(diag.BadCurve, d.Outside.Span, fmt.Sprintf("outside %s isn't said of a curve", d.Outside.Text), "write outside hold, outside extend or outside none")
 		}
 		curve.Outside = outside
-		if c.curvePoints(d, curve) && okFrom && okTo && okOutside {
+		if c.curvePoints(src, d, curve) && okFrom && okTo && okOutside {
 			sym.curve = curve
 			c.net.Curves = append(c.net.Curves, curve)
 		}
 	})
 }
 
-func (c *compiler) curvePoints(d *syntax.CurveDecl, curve *Curve) bool {
+func (c *compiler) curvePoints(src *source, d *syntax.CurveDecl, curve *Curve) bool {
 	points := slices.Clone(d.Points)
 	points = slices.DeleteFunc(points, func(p *syntax.CurvePoint) bool { return p.X.Number.Value == nil || p.Y.Number.Value == nil })
 	if len(points) != len(d.Points) {
@@ -52,6 +52,9 @@ func (c *compiler) curvePoints(d *syntax.CurveDecl, curve *Curve) bool {
 		}
 	}
 	if len(points) < 2 {
+		if src.damaged {
+			return false // the others may be there
+		}
 		c.report(diag.BadCurve, d.Name.Span, fmt.Sprintf("the curve %s has %s, a line needs two", d.Name.Text, counted(len(points), "point")), "add points")
 		return false
 	}

@@ -23,18 +23,22 @@ type diskFiles struct{}
 func DiskFiles() Files { return diskFiles{} }
 
 func (diskFiles) Read(path string) ([]byte, error) {
-	f, err := os.Open(filepath.FromSlash(path))
+	name := filepath.FromSlash(path)
+	info, err := os.Stat(name)
+	switch {
+	case err != nil:
+		return nil, err
+	case info.IsDir():
+		return nil, fmt.Errorf("it is a folder")
+	case !info.Mode().IsRegular():
+		// Opening a pipe would wait for its writer, and a device has no end.
+		return nil, fmt.Errorf("it is no regular file")
+	}
+	f, err := os.Open(name)
 	if err != nil {
 		return nil, err
 	}
 	defer f.Close()
-	info, err := f.Stat()
-	if err != nil {
-		return nil, err
-	}
-	if info.IsDir() {
-		return nil, fmt.Errorf("it is a folder")
-	}
 	text, err := io.ReadAll(io.LimitReader(f, largestFile+1))
 	if err == nil && len(text) > largestFile {
 		err = fmt.Errorf("it is larger than %d MiB", largestFile>>20)

@@ -52,7 +52,7 @@ func (c *compiler) defineIDForms() {
 			sum += int(width)
 			form.fields = append(form.fields, idFormField{name: f.Name.Text, width: int(width)})
 		}
-		if !good {
+		if !good || (sum != form.bits && src.damaged) {
 			return
 		}
 		if sum != form.bits {

@@ -62,16 +62,7 @@ func (c *compiler) layoutBlock(d *draft, b *block) {
 			}
 		}
 		for _, later := range subtrees[i+1:] {
-			for _, m := range later {
-				if !m.placed {
-					continue
-				}
-				if _, hit := first.Overlap(m.sig.Place); hit {
-					for _, other := range subtrees[i] {
-						c.overlap(d, other, m)
-					}
-				}
-			}
+			c.sisters(d, subtrees[i], &first, later)
 		}
 	}
 	for _, s := range b.selects {
@@ -82,6 +73,45 @@ func (c *compiler) layoutBlock(d *draft, b *block) {
 			c.layoutBlock(d, inner)
 		}
 	}
+}
+
+// sisters looks at the pairs of two selections of one block; set has the bits
+// of the first one. Whole branches that exclude each other are left out
+// before their members are compared.
+func (c *compiler) sisters(d *draft, first []*member, set *bits.Set, second []*member) {
+	for _, y := range byBlock(second) {
+		hit := false
+		for _, m := range y {
+			if m.placed && !hit {
+				_, hit = set.Overlap(m.sig.Place)
+			}
+		}
+		if !hit {
+			continue
+		}
+		for _, x := range byBlock(first) {
+			if exclusive(x[0].block.conditions(), y[0].block.conditions()) {
+				continue
+			}
+			for _, a := range x {
+				for _, b := range y {
+					c.overlap(d, a, b)
+				}
+			}
+		}
+	}
+}
+
+// byBlock cuts a list of members into those of one block each.
+func byBlock(members []*member) [][]*member {
+	var out [][]*member
+	for i, m := range members {
+		if i == 0 || m.block != members[i-1].block {
+			out = append(out, nil)
+		}
+		out[len(out)-1] = append(out[len(out)-1], m)
+	}
+	return out
 }
 
 // membersOf lists the members of a selection, nested ones included.

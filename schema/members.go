@@ -7,7 +7,6 @@ import (
 	"busloom/bits"
 	"busloom/diag"
 	"busloom/schema/internal/syntax"
-	"busloom/unit"
 )
 
 // checkDraft runs what is proven of every body, a message's or a shape's.
@@ -293,8 +292,6 @@ func (c *compiler) checkClauses(m *member) bool {
 	switch {
 	case s.Kind == States && t.Expr != nil:
 		return refuse(t.Expr.ExprSpan(), "a formula")
-	case s.Kind == States && t.In != nil:
-		return refuse(t.In.Span, "a unit")
 	case s.Kind == States && t.Within != nil:
 		return refuse(t.Within.Span, "a range")
 	case s.Kind == States && t.Tolerance != nil:
@@ -313,21 +310,6 @@ func (c *compiler) checkConversion(m *member) bool {
 	s, t := m.sig, m.tree
 	if t.Expr == nil {
 		s.Affine = identity
-		if t.In != nil {
-			u, ok := c.unit(m.src, *t.In)
-			if ok && u.Dim != "" {
-				c.report(diag.DimensionMistake, t.In.Span, fmt.Sprintf("%s has no formula, so it is a plain number and not in %s", s.Name, u.Symbol), fmt.Sprintf("write = raw * 1 %s", u.Symbol))
-				ok = false
-			}
-			if ok && !u.IsPlain() {
-				a, _, _, err := unit.Convert(unit.Unit{}, u)
-				if err != nil {
-					return false
-				}
-				s.Affine, s.Unit = &Affine{A: a, B: new(big.Rat)}, u
-			}
-			return ok
-		}
 		return true
 	}
 	f, ok := c.reduce(m.src, t.Expr, t.In)
@@ -350,7 +332,7 @@ func (c *compiler) checkTable(m *member) bool {
 		s.Codes, s.States = sized.codes, sized.states
 		if t.Table.States {
 			s.StateSet = table.name
-			if len(s.States) == 0 && len(s.Codes) == 0 {
+			if len(s.States) == 0 && len(s.Codes) == 0 && !c.damaged {
 				c.report(diag.NothingLeft, t.Table.Span, fmt.Sprintf("the states of %s are none", s.Name), "name its states")
 			}
 		} else {

@@ -214,6 +214,8 @@ func (c *compiler) readChoices(s *selection) {
 	}
 	exhausted := covered(values, 0, onesOf(sig.Width))
 	switch {
+	case s.tree.Otherwise == nil && !exhausted && s.src.damaged:
+		s.broken = true // the branch may be there
 	case s.tree.Otherwise == nil && !exhausted:
 		c.report(diag.OtherwiseMissing, s.tree.Word, fmt.Sprintf("nothing is said of %s = %s", s.selector.path, missingText(values, sig.Width)),
 			"write otherwise nothing, otherwise unknown, or otherwise with a block")

@@ -159,9 +159,6 @@ func (c *compiler) unit(src *source, ref syntax.UnitRef) (unit.Unit, bool) {
 	}
 	near := unknown.Nearest
 	if near == "" {
-		near = c.unpunctuated(unknown.Text)
-	}
-	if near == "" {
 		near = c.nearest(unknown.Text, c.units.Symbols())
 	}
 	remedy := fmt.Sprintf("declare it: unit %s", unknown.Text)
@@ -170,18 +167,6 @@ func (c *compiler) unit(src *source, ref syntax.UnitRef) (unit.Unit, bool) {
 	}
 	c.report(diag.UnknownUnit, ref.Span, r.err.Error(), remedy)
 	return unit.Unit{}, false
-}
-
-// unpunctuated finds the symbol that a text is without its signs: km/h for
-// kmh, m/s^2 for ms2.
-func (c *compiler) unpunctuated(text string) string {
-	bare := strings.NewReplacer("/", "", "*", "", "^", "")
-	for _, s := range c.units.Symbols() {
-		if t := bare.Replace(s); t != s && strings.EqualFold(t, text) {
-			return s
-		}
-	}
-	return ""
 }
 
 // quantity converts a quantity to a unit, as a value of it (a point to a

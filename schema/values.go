@@ -646,6 +646,9 @@ func (c *compiler) initialName(m *member, name *syntax.Name) bool {
 
 // unknownWord reports a word that is no state or code of a member.
 func (c *compiler) unknownWord(code diag.Code, m *member, name syntax.Name) {
+	if c.damaged {
+		return // it may be among what couldn't be read
+	}
 	words := m.sig.words()
 	remedy := "write a raw value"
 	if len(words) > 0 && len(words) <= 8 {

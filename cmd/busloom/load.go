@@ -64,14 +64,21 @@ func readNetwork(path string) (*schema.Network, *diag.List, error) {
 const largestDescription = 1 << 30
 
 func readDescription(path string) ([]byte, error) {
+	info, err := os.Stat(path)
+	switch {
+	case err != nil:
+		return nil, err
+	case info.IsDir():
+		return nil, fmt.Errorf("%s is a folder, not a description", path)
+	case !info.Mode().IsRegular():
+		// A description is read more than once, which only a file allows.
+		return nil, fmt.Errorf("%s is no regular file", path)
+	}
 	f, err := os.Open(path)
 	if err != nil {
 		return nil, err
 	}
 	defer f.Close()
-	if info, err := f.Stat(); err == nil && info.IsDir() {
-		return nil, fmt.Errorf("%s is a folder, not a description", path)
-	}
 	text, err := io.ReadAll(io.LimitReader(f, largestDescription+1))
 	if err != nil {
 		return nil, err

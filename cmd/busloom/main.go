@@ -11,18 +11,26 @@ import (
 	"os"
 	"os/signal"
 	"syscall"
+	"time"
 
 	"github.com/spf13/cobra"
 )
 
 func main() {
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
-	// A second Ctrl-C ends the program at once.
-	context.AfterFunc(ctx, stop)
+	context.AfterFunc(ctx, func() {
+		// A second Ctrl-C ends the program at once, and so does waiting for
+		// something that doesn't heed the first.
+		stop()
+		time.AfterFunc(patience, func() { os.Exit(exitInterrupted) })
+	})
 	code := run(ctx, os.Args[1:], os.Stdin, os.Stdout, os.Stderr)
 	stop()
 	os.Exit(code)
 }
+
+// patience is how long an interrupted command may take to end by itself.
+const patience = 3 * time.Second
 
 // streams are the program's standard streams; data goes to out, talk to err.
 type streams struct {
