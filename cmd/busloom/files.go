@@ -32,6 +32,9 @@ func createOutput(std *streams, path string) (*outputFile, error) {
 		}
 		return &outputFile{Writer: f, file: f}, nil
 	}
+	if info, err := os.Stat(path); err == nil && info.Mode().Perm()&0o200 == 0 {
+		return nil, ioError(fmt.Errorf("%s is read-only", path))
+	}
 	f, err := os.CreateTemp(filepath.Dir(path), "."+filepath.Base(path)+".*")
 	if err != nil {
 		var where *os.PathError
