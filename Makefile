@@ -5,7 +5,7 @@ LONGFUZZ ?= 60s
 BIN := bin/busloom
 
 .DEFAULT_GOAL := help
-.PHONY: help need-go build demo test unit lint layers current fuzz fuzz-short bench generate clean
+.PHONY: help need-go build demo test unit lint current fuzz fuzz-short bench generate clean
 
 help: ## list the targets
 	@awk -F':.*## ' '/^[a-z-]+:.*## /{printf "  make %-12s %s\n", $$1, $$2}' $(MAKEFILE_LIST)
@@ -26,6 +26,8 @@ test: need-go lint current unit fuzz-short ## everything that must pass before a
 unit: need-go ## vet, all tests under the race detector, layering check, command scripts
 	$(GO) vet ./...
 	$(GO) test -race ./...
+	@# These run other programs, which the test cache knows nothing of.
+	$(GO) test -count=1 . ./cmd/busloom
 
 lint: need-go ## gofmt, staticcheck, govulncheck
 	@out=$$(gofmt -l $$(git ls-files '*.go' 2>/dev/null || find . -name '*.go')); if [ -n "$$out" ]; then echo "not formatted (run gofmt -w):" $$out >&2; exit 1; fi
@@ -35,7 +37,7 @@ lint: need-go ## gofmt, staticcheck, govulncheck
 current: need-go ## check that generated files are current
 	@sh scripts/current.sh $(GO)
 
-generate: need-go ## make the generated files anew: Heron's captures and database, the JSON Schema's copy in the docs
+generate: need-go ## make the generated files anew: Heron's captures
 	@sh scripts/generate.sh $(GO) .
 
 fuzz-short: need-go
